@@ -14,6 +14,7 @@ struct StationClock {
   UtcOffset offset{};
   std::chrono::minutes day_start{0};
   int water_year_month = 10;
+  friend bool operator==(const StationClock&, const StationClock&) = default;
 };
 
 /// A station day: counted in days since 1970-01-01 in the station's clock; named by the date on which it starts.

@@ -20,6 +20,7 @@ struct Station {
   std::optional<double> latitude;   ///< degrees north
   std::optional<double> longitude;  ///< degrees east
   std::string remark;
+  friend bool operator==(const Station&, const Station&) = default;
 };
 
 /// Gauge zero from `valid_from` until the next row.
@@ -28,6 +29,7 @@ struct GaugeZeroRow {
   Instant valid_from{};
   GaugeZero zero;
   std::string remark;
+  friend bool operator==(const GaugeZeroRow&, const GaugeZeroRow&) = default;
 };
 
 enum class ControlKind { section, channel, overbank };
@@ -54,6 +56,7 @@ struct ReachRow {
   std::optional<double> level_from_m;   ///< range of levels in which the control's law is fitted
   std::optional<double> level_to_m;
   std::string remark;
+  friend bool operator==(const ReachRow&, const ReachRow&) = default;
 };
 
 struct SurveyPoint {
@@ -62,6 +65,7 @@ struct SurveyPoint {
   double distance_m = 0;
   double elevation_m = 0;
   std::string mark;  ///< name of a fixed point; empty where it is none
+  friend bool operator==(const SurveyPoint&, const SurveyPoint&) = default;
 };
 
 struct Survey {
@@ -71,6 +75,7 @@ struct Survey {
   std::optional<double> level_uncertainty_m;  ///< one sd of the survey's common level error
   std::vector<SurveyPoint> points;            ///< in the order of the file, one cross-section after another
   std::string remark;
+  friend bool operator==(const Survey&, const Survey&) = default;
 };
 
 struct Gauging {
@@ -96,6 +101,7 @@ struct Gauging {
   [[nodiscard]] Stage mean_stage() const;
   [[nodiscard]] bool is_zero_flow() const { return discharge.m3s() == 0; }
   [[nodiscard]] bool is_zero_flow_level() const { return method == "zero-flow-level"; }
+  friend bool operator==(const Gauging&, const Gauging&) = default;
 };
 
 /// A correction added to recorded stage, linear from `from` to `until` (until excluded). Readings stay as recorded.
@@ -106,6 +112,7 @@ struct StageCorrection {
   HeightChange add_at_from;
   HeightChange add_at_until;
   std::string remark;
+  friend bool operator==(const StageCorrection&, const StageCorrection&) = default;
 };
 
 }  // namespace scourbook
