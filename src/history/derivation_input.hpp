@@ -25,8 +25,10 @@ struct DerivationInput {
   rederivation::Input input;          ///< complete when there are no refusals
 };
 
-/// Parent: descends_from, else the curve in force just before `from` (never one whose period starts there), else a first curve.
-/// Refused where it or an ancestor used a gauging that this derivation would use. Throws StoreError refused for an unknown station.
-[[nodiscard]] DerivationInput collect(const store::Book& book, const DerivationRequest& request, Known known = {});
+/// Parent: descends_from, else the curve in force just before `from` (never one whose period starts there),
+/// else a first curve. Refused where it or an ancestor used a gauging that this derivation would use. Throws
+/// StoreError refused for an unknown station.
+[[nodiscard]] DerivationInput collect(const store::Book& book, const DerivationRequest& request,
+                                      Known known = {});
 
 }  // namespace scourbook::history
