@@ -148,11 +148,16 @@ void note_cut_blends(const std::vector<Period>& before, const std::vector<Period
   }
 }
 
+/// A period cut inside its blend cannot take in what follows: its blend would go on there.
+bool is_cut_in_blend(const Period& period) {
+  return period.blend > Millis{0} && end_of(period) < period.from + period.blend;
+}
+
 std::vector<Period> merged(const std::vector<Period>& periods) {
   std::vector<Period> result;
   for (const Period& period : periods) {
     const bool joins = !result.empty() && result.back().until == period.from && period.blend == Millis{0} &&
-                       same_holder(result.back(), period);
+                       same_holder(result.back(), period) && !is_cut_in_blend(result.back());
     if (joins) {
       result.back().until = period.until;
     } else {
