@@ -1,0 +1,9 @@
+#include "terms/quantity.hpp"
+
+using namespace scourbook;
+
+auto right(Stage stage, Level level, GaugeZero zero, Discharge flow) {
+  (void)stage, (void)level, (void)zero, (void)flow;
+  double metres = level.metres();
+  return metres;
+}

@@ -1,0 +1,26 @@
+# cmake -DCOMPILER=... -DSRC=... -DFAIL=X.fail.cpp -DOK=X.ok.cpp -P must_not_compile.cmake
+function(compile file result output)
+  execute_process(COMMAND ${CMAKE_COMMAND} -E env LC_ALL=C ${COMPILER} -std=c++20 -fsyntax-only -I ${SRC} ${file}
+                  RESULT_VARIABLE status OUTPUT_VARIABLE text ERROR_VARIABLE text)
+  set(${result} ${status} PARENT_SCOPE)
+  set(${output} "${text}" PARENT_SCOPE)
+endfunction()
+
+compile(${OK} status text)
+if(NOT status EQUAL 0)
+  message(FATAL_ERROR "${OK} does not compile:\n${text}")
+endif()
+
+file(STRINGS ${FAIL} refused REGEX "^// refused: ")
+list(LENGTH refused count)
+if(NOT count EQUAL 1)
+  message(FATAL_ERROR "${FAIL} needs one line \"// refused: WORDS\" (a regular expression)")
+endif()
+string(REGEX REPLACE "^// refused: " "" words "${refused}")
+compile(${FAIL} status text)
+if(status EQUAL 0)
+  message(FATAL_ERROR "${FAIL} compiles, and must not")
+endif()
+if(NOT text MATCHES "${words}")
+  message(FATAL_ERROR "${FAIL} is refused, but not with \"${words}\":\n${text}")
+endif()

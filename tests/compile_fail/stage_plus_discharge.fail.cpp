@@ -1,0 +1,10 @@
+// A stage and a discharge are different things.
+// refused: no match for .operator\+|invalid operands
+#include "terms/quantity.hpp"
+
+using namespace scourbook;
+
+auto wrong(Stage stage, Level level, GaugeZero zero, Discharge flow) {
+  (void)stage, (void)level, (void)zero, (void)flow;
+  return stage + flow;
+}
