@@ -121,7 +121,7 @@ bool CsvReader::is_text(std::string_view line) {
   const bool utf16 =
       lines_.number() == 1 && (line.substr(0, 2) == "\xFF\xFE" || line.substr(0, 2) == "\xFE\xFF");
   if (utf16 || line.find('\0') != std::string_view::npos) {
-    finding.fault = utf16 ? "is UTF-16 text" : "is text that is no table: it holds NUL bytes";
+    finding.fault = utf16 ? "is UTF-16 text" : "is no table: it holds NUL bytes";
     finding.expected = "a table as CSV in UTF-8";
     finding.remedy = utf16 ? "save it as CSV in UTF-8" : "export the table as CSV";
     stop(std::move(finding));

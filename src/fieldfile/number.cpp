@@ -61,21 +61,16 @@ bool parse_decimal(std::string_view text, std::int64_t& value, int& decimals) {
   return true;
 }
 
-std::string remedy_of(NumberFault fault, std::string_view text) {
-  switch (fault) {
-    case NumberFault::decimal_comma: {
-      std::string with_point(text);
-      std::replace(with_point.begin(), with_point.end(), ',', '.');
-      return "write " + with_point;
-    }
-    case NumberFault::not_finite:
-      return "write the number, or leave the field blank where there is none";
-    case NumberFault::not_a_number:
-      return "write the number alone, without unit or words";
-    case NumberFault::none:
-      break;
+std::string remedy_of(NumberFault fault, std::string_view text, bool may_be_blank) {
+  if (fault == NumberFault::none) return {};
+  if (fault == NumberFault::decimal_comma) {
+    std::string with_point(text);
+    std::replace(with_point.begin(), with_point.end(), ',', '.');
+    return "write " + with_point;
   }
-  return {};
+  std::string way = "write the number alone, without unit or words";
+  if (may_be_blank) way += ", or leave the field blank where there is none";
+  return way;
 }
 
 std::string_view explain(NumberFault fault) {

@@ -27,8 +27,9 @@ struct ParsedNumber {
 /// at most 18 digits. False for everything else.
 [[nodiscard]] bool parse_decimal(std::string_view text, std::int64_t& value, int& decimals);
 
-/// The way out of a number's fault, for a finding's "to do".
-[[nodiscard]] std::string remedy_of(NumberFault fault, std::string_view text);
+/// The way out of a number's fault, for a finding's "to do"; `may_be_blank`: the field may also be left
+/// blank.
+[[nodiscard]] std::string remedy_of(NumberFault fault, std::string_view text, bool may_be_blank);
 /// "is not a number" or "is not a finite number".
 [[nodiscard]] std::string_view explain(NumberFault fault);
 

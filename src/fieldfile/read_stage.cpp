@@ -207,9 +207,10 @@ class StageReader {
 
   static void not_plain(Row& row, std::string_view text) {
     const NumberFault bad = parse_number(text).fault;
-    row.fault("stage", fmt::format("{} {}: {}", row.title("stage"), explain(bad), in_quotes(text)),
-              "a plain decimal number with a point, or blank where the reading is missing",
-              bad == NumberFault::none ? "write the digits out, without exponent" : remedy_of(bad, text));
+    row.fault(
+        "stage", fmt::format("{} {}: {}", row.title("stage"), explain(bad), in_quotes(text)),
+        "a plain decimal number with a point, or blank where the reading is missing",
+        bad == NumberFault::none ? "write the digits out, without exponent" : remedy_of(bad, text, true));
   }
 
   static void check_order(Row& row, const Draft& draft, Instant time) {

@@ -110,7 +110,7 @@ std::optional<double> Row::number(std::string_view column, const Range& range, b
   const ParsedNumber parsed = parse_number(given);
   if (parsed.fault != NumberFault::none) {
     fault(column, fmt::format("{} {}: {}", title(column), explain(parsed.fault), in_quotes(given)),
-          "a decimal number with a point, for example 12.5", remedy_of(parsed.fault, given));
+          "a decimal number with a point, for example 12.5", remedy_of(parsed.fault, given, !must));
     return {};
   }
   const auto cell = header_->find(column);
@@ -127,27 +127,28 @@ std::optional<double> Row::number(std::string_view column, const Range& range, b
 }
 
 void Row::fault_of_time(std::string_view column, TimeFault bad) {
-  const std::string said = fmt::format("{}: {}: {}", title(column), explain(bad), in_quotes(text(column)));
+  const std::string_view name = title(column);
+  const std::string given = in_quotes(text(column));
   switch (bad) {
+    case TimeFault::none:
+      return;
+    case TimeFault::not_a_time:
+      return fault(column, fmt::format("{} is not a time: {}", name, given), kTimeForm);
     case TimeFault::no_such_date: {
       const bool leap_day = text(column).substr(4, 6) == "-02-29";
-      fault(
-          column, said, "a date of the calendar, years 1677 to 2261",
+      return fault(
+          column, fmt::format("{} names a date that does not exist: {}", name, given),
+          "a date of the calendar, years 1677 to 2261",
           leap_day ? fmt::format("{} is no leap year: write the right date", text(column).substr(0, 4)) : "");
-      break;
     }
     case TimeFault::no_such_hour:
-      fault(column, said, "hours 00 to 23, minutes and seconds 00 to 59",
-            "write 24:00 as 00:00 of the next day");
-      break;
+      return fault(column, fmt::format("{} names a time of day that does not exist: {}", name, given),
+                   "hours 00 to 23, minutes and seconds 00 to 59", "write 24:00 as 00:00 of the next day");
     case TimeFault::no_offset:
-      fault_once("offset " + std::string(text("station")), column, said,
-                 "an offset in the text, or a known station whose offset holds",
-                 "write the offset behind the time, for example +01:00, or take in a station file");
-      break;
-    default:
-      fault(column, said, kTimeForm);
-      break;
+      return fault_once("offset " + std::string(text("station")), column,
+                        fmt::format("{} has no offset from UTC: {}", name, given),
+                        "an offset in the text, or a known station whose offset holds",
+                        "write the offset behind the time, for example +01:00, or take in a station file");
   }
 }
 

@@ -67,6 +67,11 @@ bool Table::fits(Row& row) {
     finding.fault = "all fields are blank";
     finding.expected = header_->line;
     finding.remedy = "take the line out";
+  } else if (row.record_.raw == header_->line) {
+    finding = row.record_.whole();
+    finding.fault = "the header line stands here again";
+    finding.expected = "one header at the top";
+    finding.remedy = "take the line out";
   } else if (fields.size() == want) {
     return true;
   } else {
