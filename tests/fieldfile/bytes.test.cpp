@@ -2,41 +2,15 @@
 
 #include <zlib.h>
 
-#include <filesystem>
-#include <fstream>
 #include <random>
 
 #include "fieldfile_texts.hpp"
-#include "store/book.hpp"
+#include "folder.hpp"
 
 using namespace scourbook;
 using namespace scourbook::fieldfile;
-namespace fs = std::filesystem;
 
 namespace {
-
-/// A folder of its own for one test, gone afterwards.
-class Folder {
- public:
-  Folder() {
-    std::string pattern = (fs::temp_directory_path() / "fieldfile-XXXXXX").string();
-    REQUIRE(mkdtemp(pattern.data()) != nullptr);
-    path_ = pattern;
-  }
-  ~Folder() { fs::remove_all(path_); }
-  Folder(const Folder&) = delete;
-  Folder& operator=(const Folder&) = delete;
-
-  std::string write(const std::string& name, const std::string& content) const {
-    const std::string path = (path_ / name).string();
-    std::ofstream(path, std::ios::binary) << content;
-    return path;
-  }
-  std::string path() const { return path_.string(); }
-
- private:
-  fs::path path_;
-};
 
 std::string packed(const std::string& text) {
   z_stream stream{};
@@ -101,7 +75,7 @@ TEST_CASE("gzip is unpacked, by its content and not its name; size and hash are 
     CHECK_FALSE(bytes.fault().any());
     CHECK(bytes.bytes() == static_cast<std::int64_t>(gzip.size()));
     FileBytes as_given(folder.write("plain.bin", "x" + gzip));
-    FileBytes again(folder.path() + "/" + name);
+    FileBytes again(folder.path(name));
     all_of(again);
     CHECK(again.sha256() == bytes.sha256());
   }
@@ -141,7 +115,7 @@ TEST_CASE("damaged gzip is a fault") {
 
 TEST_CASE("what is no file is a finding") {
   const Folder folder;
-  const std::string missing = folder.path() + "/none.csv";
+  const std::string missing = folder.path("none.csv");
   KnownStations known;
   FileBytes none(missing);
   CHECK(describe(read_records(none, "none.csv", known).findings) ==
@@ -160,9 +134,6 @@ TEST_CASE("what is no file is a finding") {
 
 TEST_CASE("a file that turns out damaged half way is one finding, whatever was read before") {
   const Folder folder;
-  std::string rows = "station,time,stage_m\n";
-  for (int i = 0; i < 2000; ++i)
-    rows += "TAR-1,2010-01-" + std::to_string(10 + i / 1440 * 10) + "T00:00Z,1.2\n";
   FileBytes bytes(
       folder.write("s.csv.gz", packed("station,time,stage_m\nTAR-1,2010-01-01T00:00Z,1.2\n").substr(0, 55)));
   KnownStations known = two_stations();
