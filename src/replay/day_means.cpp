@@ -20,14 +20,13 @@ class Day {
     const std::int64_t end = std::min(piece.until.time_ms, until_ms());
     if (begin >= end) return;
     const auto width = static_cast<double>(end - begin);
-    const double first = between(piece, begin, piece.from.discharge_m3s, piece.until.discharge_m3s);
-    const double last = between(piece, end, piece.from.discharge_m3s, piece.until.discharge_m3s);
-    const double first_sd = between(piece, begin, piece.from.sd_ln_q, piece.until.sd_ln_q);
-    const double last_sd = between(piece, end, piece.from.sd_ln_q, piece.until.sd_ln_q);
-    volume_ += (first + last) / 2 * width;
-    spread_ += (first * first_sd + last * last_sd) / 2 * width;
+    const FlowPoint& a = piece.from;
+    const FlowPoint& b = piece.until;
+    volume_ += trapezoid(piece, begin, end, a.discharge_m3s, b.discharge_m3s) * width;
+    spread_ += trapezoid(piece, begin, end, a.discharge_m3s * a.sd_ln_q, b.discharge_m3s * b.sd_ln_q) * width;
     covered_ms_ += end - begin;
-    for (const FlowPoint& point : {piece.from, piece.until}) note(point);
+    note(a);
+    note(b);
   }
 
   [[nodiscard]] DayMean finish(double least_share) {
@@ -54,6 +53,11 @@ class Day {
     return from + (until - from) * share;
   }
 
+  static double trapezoid(const FlowPiece& piece, std::int64_t begin, std::int64_t end, double from,
+                          double until) {
+    return (between(piece, begin, from, until) + between(piece, end, from, until)) / 2;
+  }
+
   void note(const FlowPoint& point) {
     mean_.flags |= point.flags;
     worst_ = worse(worst_, point.quality);
@@ -73,7 +77,7 @@ class Day {
   DayMean mean_;
   Quality worst_ = Quality::unchecked;
   double volume_ = 0;  // m3/s times ms
-  double spread_ = 0;  // the same, times the sd of ln Q
+  double spread_ = 0;  // its sd, which is linear between the ends of a piece as the flow is
   std::int64_t covered_ms_ = 0;
 };
 
