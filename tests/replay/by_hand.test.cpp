@@ -81,7 +81,7 @@ TEST_CASE("a boundary between readings: the level is interpolated and both curve
   REQUIRE(days.size() == 3);
   CHECK_FALSE(days[0].mean_m3s);
   CHECK(days[0].flags == bit(Flag::gap));
-  CHECK(*days[1].mean_m3s == Approx((2.5 + 7) / 2).epsilon(1e-14));
+  CHECK(days[1].mean_m3s.value() == Approx((2.5 + 7) / 2).epsilon(1e-14));
   CHECK(days[1].share == 1);
   CHECK(days[1].flags == 0);
   CHECK(days[1].quality == Quality::unchecked);
@@ -96,7 +96,7 @@ TEST_CASE("several boundaries between two readings, one of them the begin of a t
       {reading("2020-01-02T00:00Z", 1000), reading("2020-01-03T00:00Z", 1000)});
   const auto days = small.days("2020-01-02T00:00Z", "2020-01-03T00:00Z");
   CHECK(days[0].share == 21.0 / 24);
-  CHECK(*days[0].mean_m3s == Approx((6 * 1 + 15 * 10) / 21.0).epsilon(1e-14));
+  CHECK(days[0].mean_m3s.value() == Approx((6 * 1 + 15 * 10) / 21.0).epsilon(1e-14));
   CHECK(words(days[0].flags) == "gap");
   CHECK(days[0].quality == Quality::estimate);
   CHECK(days[0].curves == std::vector<int>{1, 3});
@@ -129,7 +129,7 @@ TEST_CASE("a blank reading is none: its neighbours stay neighbours while they ar
       reading("2020-01-02T00:00Z", 1000), reading("2020-01-02T12:00Z", store::kMissing),
       reading("2020-01-02T13:00Z", 7000, Quality::missing), reading("2020-01-03T00:00Z", 3000)};
   const Small near(always, readings, 1440);
-  CHECK(*near.days("2020-01-02T00:00Z", "2020-01-03T00:00Z")[0].mean_m3s == Approx(2).epsilon(1e-14));
+  CHECK(near.days("2020-01-02T00:00Z", "2020-01-03T00:00Z")[0].mean_m3s.value() == Approx(2).epsilon(1e-14));
   const auto block = near.flows("2020-01-02T00:00Z", "2020-01-03T00:00Z");
   CHECK(std::isnan(block.discharge_m3s[1]));
   CHECK(std::isnan(block.discharge_m3s[2]));
@@ -150,9 +150,32 @@ TEST_CASE("one piece may hold several days") {
                     {reading("2020-01-02T00:00Z", 1000), reading("2020-01-06T00:00Z", 5000)}, 10'000);
   const auto days = small.days("2020-01-03T00:00Z", "2020-01-07T00:00Z");
   REQUIRE(days.size() == 4);
-  CHECK(*days[0].mean_m3s == Approx(2.5).epsilon(1e-14));
-  CHECK(*days[2].mean_m3s == Approx(4.5).epsilon(1e-14));
+  CHECK(days[0].mean_m3s.value() == Approx(2.5).epsilon(1e-14));
+  CHECK(days[2].mean_m3s.value() == Approx(4.5).epsilon(1e-14));
   CHECK_FALSE(days[3].mean_m3s);
+}
+
+TEST_CASE(
+    "the first day of a month needs the last reading of the month before, the last day the first of the "
+    "next") {
+  const Small small({period(1, "2020-01-01T00:00Z", "")},
+                    {reading("2020-01-31T12:00Z", 1000), reading("2020-02-01T12:00Z", 3000),
+                     reading("2020-02-02T00:00Z", 3000), reading("2020-02-28T20:00Z", 1000),
+                     reading("2020-02-29T20:00Z", 1000), reading("2020-03-01T04:00Z", 5000)});
+  // 12 h from 2 to 3, 12 h of 3.
+  CHECK(small.days("2020-02-01T00:00Z", "2020-02-02T00:00Z")[0].mean_m3s.value() ==
+        Approx(2.75).epsilon(1e-14));
+  // 20 h of 1 m3/s, then 4 h from 1 to 3.
+  CHECK(small.days("2020-02-29T00:00Z", "2020-03-01T00:00Z")[0].mean_m3s.value() ==
+        Approx(28.0 / 24).epsilon(1e-14));
+}
+
+TEST_CASE("the least share of a day is enough") {
+  const std::vector<Period> always{period(1, "2020-01-01T00:00Z", "")};
+  const Small enough(always, {reading("2020-01-02T00:00Z", 1000), reading("2020-01-02T19:12Z", 1000)});
+  CHECK(enough.days("2020-01-02T00:00Z", "2020-01-03T00:00Z")[0].mean_m3s);
+  const Small less(always, {reading("2020-01-02T00:00Z", 1000), reading("2020-01-02T19:11:59Z", 1000)});
+  CHECK_FALSE(less.days("2020-01-02T00:00Z", "2020-01-03T00:00Z")[0].mean_m3s);
 }
 
 TEST_CASE("below the offset the flow is 0, and it is said") {
@@ -166,10 +189,10 @@ TEST_CASE("below the offset the flow is 0, and it is said") {
   CHECK(words(block.flags[0]) == "no-flow");
   CHECK(block.curve[0] == 1);
   const auto days = small.days("2020-01-02T00:00Z", "2020-01-04T00:00Z");
-  CHECK(*days[0].mean_m3s == 0);
+  CHECK(days[0].mean_m3s.value() == 0);
   CHECK(words(days[0].flags) == "no-flow");
   CHECK(days[0].sd_ln_q == 0);
-  CHECK(*days[1].mean_m3s == Approx(0.5).epsilon(1e-14));
+  CHECK(days[1].mean_m3s.value() == Approx(0.5).epsilon(1e-14));
   CHECK(days[1].flags == 0);
 }
 
@@ -190,6 +213,32 @@ TEST_CASE("before the first gauge zero and outside periods there is no flow") {
 TEST_CASE("a station without an edition cannot be replayed") {
   const Small small({}, {reading("2020-01-02T00:00Z", 1000)});
   CHECK_THROWS_WITH(small.replayer(), "station R-1 has no edition yet: derive a curve and adopt it");
+}
+
+TEST_CASE("limits belong to the range, and a blend with one dry curve has a flow") {
+  const TemporaryPath path("limits");
+  auto book = store::Book::create(path.text(), head("new"));
+  add_ground(book, StationClock{}, {zero("2020-01-01T00:00Z", 100)});
+  RatingCurve gauged = proportional(1);
+  gauged.gauged_low_m3s = gauged.gauged_high_m3s = gauged.lineage_high_m3s = 1;
+  gauged.surveyed_top_m = 101;
+  add_curves(book, {gauged, curve({control(ControlKind::channel, 105, 1, 1)})});
+  add_edition(book, {period(1, "2020-01-01T00:00Z", "2020-01-02T00:00Z"),
+                     period(2, "2020-01-02T00:00Z", "", Millis(4 * 3'600'000))});
+  add_stage(book, {reading("2020-01-01T12:00Z", 1000), reading("2020-01-01T13:00Z", 1001),
+                   reading("2020-01-02T02:00Z", 1000), reading("2020-01-02T03:00Z", -1000)});
+  replay::Replayer(book, history::view_of(book, kStation))
+      .run(at("2020-01-01T00:00Z"), at("2020-02-01T00:00Z"), [](const replay::FlowBlock& block) {
+        CHECK(block.discharge_m3s[0] == 1);
+        CHECK(block.flags[0] == 0);
+        CHECK(block.quality[0] == Quality::unchecked);
+        CHECK(words(block.flags[1]) == "above-gauged above-surveyed");
+        CHECK(block.quality[1] == Quality::poor);
+        CHECK(block.discharge_m3s[2] == 0.5);
+        CHECK(words(block.flags[2]) == "blended");
+        CHECK(block.discharge_m3s[3] == 0);
+        CHECK(words(block.flags[3]) == "below-gauged no-flow blended");
+      });
 }
 
 TEST_CASE("a tentative edition is tried without storing it") {
