@@ -10,7 +10,8 @@ namespace scourbook::rating {
 /// What a curve says at one level.
 struct Flow {
   double discharge_m3s = 0;
-  int control = -1;  ///< index in controls of section or channel that governs, or of the highest overbank control that adds where there is neither; -1: no flow
+  int control = -1;  ///< index in controls of section or channel that governs, or of the highest overbank
+                     ///< control that adds where there is neither; -1: no flow
 };
 
 /// Q(z) of one control: flow_scale * x^y(z - h0, exponent) with reproducible_pow; 0 for z <= h0.
@@ -30,14 +31,15 @@ struct Flow {
 /// u95 in percent: 100 (exp(1.96 sd) - 1), by reproducible_exp.
 [[nodiscard]] double u95_pct(double sd);
 
-/// The level of a flow: bisection between cease-to-flow and the level 50 m above it, to 1e-9 m; nothing for flow <= 0 or beyond.
+/// The level of a flow: bisection between cease-to-flow and the level 50 m above it, to 1e-9 m; nothing for
+/// flow <= 0 or beyond.
 [[nodiscard]] std::optional<double> level_of(const RatingCurve& curve, double discharge_m3s);
 /// The level at which flow ceases.
 [[nodiscard]] double cease_to_flow_m(const RatingCurve& curve);
 
-/// The lowest level at which the flow passes from section to channel (below it the section's flow is the smaller,
-/// above it the channel's), searched up to `top_m`; nothing where there is none.
-[[nodiscard]] std::optional<double> find_takeover(const ControlCoefficients& section, const ControlCoefficients& channel,
-                                                  double top_m);
+/// The lowest level at which the flow passes from section to channel (below it the section's flow is the
+/// smaller, above it the channel's), searched up to `top_m`; nothing where there is none.
+[[nodiscard]] std::optional<double> find_takeover(const ControlCoefficients& section,
+                                                  const ControlCoefficients& channel, double top_m);
 
 }  // namespace scourbook::rating
