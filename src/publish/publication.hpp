@@ -1,0 +1,29 @@
+#pragma once
+// Making a replay a publication: the figures that go out, rounded, with their uncertainty and flags.
+
+#include <functional>
+#include <string>
+
+#include "store/book.hpp"
+
+namespace scourbook::publish {
+
+/// The publication (number 0, without sha256) of a kept replay: its whole station days, values at the
+/// readings and day means, rounded as the settings say. Computes the flows anew from the replay's edition,
+/// data version and method, and throws StoreError damaged where their digests differ from those kept.
+/// Published quality: what is only unchecked because it was not published becomes good.
+/// `progress(months done, months in all)` may be empty.
+[[nodiscard]] store::Publication make_publication(
+    const store::Book& book, const store::ReplayRecord& replay,
+    const std::function<void(std::int64_t, std::int64_t)>& progress = {});
+
+/// The number of the newest publication, at most known.act, that covers `time`; nothing where none does.
+[[nodiscard]] std::optional<int> publication_at(const store::Book& book, const std::string& station,
+                                                Instant time, Known known = {});
+
+enum class PublicationState { published, superseded };
+/// superseded: newer publications cover all of its days.
+[[nodiscard]] PublicationState state_of(const store::Publication& publication,
+                                        const std::vector<store::Publication>& all);
+
+}  // namespace scourbook::publish

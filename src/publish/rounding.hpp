@@ -1,0 +1,23 @@
+#pragma once
+// From computed flows to figures as published: whole numbers, so that they compare exactly.
+
+#include <cstdint>
+#include <string>
+
+#include "store/book.hpp"
+
+namespace scourbook::publish {
+
+/// `discharge_m3s` (finite, 0 or more) rounded to `settings.published_digits` significant digits and at most
+/// `settings.published_decimals` decimals, halves away from zero, as a whole number of 10^-published_decimals
+/// m3/s. Only + - x / and comparisons, so the same on every machine.
+[[nodiscard]] std::int64_t as_published(double discharge_m3s, const store::Settings& settings);
+
+/// "12.3", "0.045", "1230", with the decimals that the rounding rule of `settings` gives a figure of this
+/// size.
+[[nodiscard]] std::string format_published(std::int64_t units, int decimals, std::int64_t digits);
+
+/// 95 % uncertainty of a flow with this sd of ln Q in tenths of a percent, halves up; at most 99999.
+[[nodiscard]] std::int64_t u95_tenth_pct(double sd_ln_q);
+
+}  // namespace scourbook::publish
