@@ -15,14 +15,18 @@ struct LevelRange {
 
 /// area = w (z - h0)^c over a range of levels.
 struct AreaLaw {
-  double h0_m = 0;      ///< offset
-  double w = 0;         ///< area coefficient, m^(2-c)
-  double c = 0;         ///< area exponent
-  double max_misfit = 0;               ///< largest |law / section - 1| over the fitted levels
-  std::vector<double> missed_levels_m; ///< fitted levels where it misses by over 10 %
-  bool narrow_slot = false;            ///< the lowest 5 % of depth holds under 0.1 % of the area
+  double h0_m = 0;        ///< offset
+  double w = 0;           ///< area coefficient, m^(2-c)
+  double c = 0;           ///< area exponent
+  double max_misfit = 0;  ///< largest |law / section - 1| over the fitted levels that are wet
+  /// Fitted levels where it misses by over 10 %, and those where the section is dry (they take no part in the
+  /// fit).
+  std::vector<double> missed_levels_m;
+  /// The lowest 5 % of the range's depth hold under 0.1 % of the area at its top. Says nothing about a crest.
+  bool narrow_slot = false;
 };
 
+/// nowhere_wet: fewer than two of the levels are wet. empty_range: the range has no depth.
 enum class LawStatus { not_run, ok, nowhere_wet, empty_range };
 struct AreaLawFit {
   LawStatus status = LawStatus::not_run;
@@ -35,15 +39,20 @@ struct AreaLawFit {
 /// Log-log least squares of area on depth over law_levels, equal weight, offset = range.from_m.
 [[nodiscard]] AreaLawFit fit_area_law(const SectionPart& part, LevelRange range);
 /// The same with the offset fitted: h0 = range.from_m + x (to - from), x in [-0.05, 0.045] that minimises the
-/// squared log residual (a channel control).
+/// squared log residual (a channel control). x is found as the root of the derivative, so that it does not
+/// hang on rounding: the same section in other units gives the same law.
 [[nodiscard]] AreaLawFit fit_area_law_free_offset(const SectionPart& part, LevelRange range);
 
 /// Velocity exponent b: 2/3 manning, 1/2 chezy and critical.
 [[nodiscard]] double velocity_exponent(FlowLaw law);
-/// Velocity scale v1 of a reach row: sqrt(S)/(n m), C sqrt(S)/m, or C_d. The row must hold what its law needs.
+/// Velocity scale v1 of a reach row: sqrt(S)/(n m), C sqrt(S)/m, or C_d. The row must hold what its law
+/// needs.
 [[nodiscard]] double velocity_scale(const ReachRow& row);
-/// Section coefficient f of the law: for manning and chezy exp(mean over law_levels of [ln(area R^b) - (b+c) ln d]),
-/// d = z - law.h0; for critical w sqrt(g/c) (2c/(2c+1))^(c+1/2).
-[[nodiscard]] double section_coefficient(const SectionPart& part, const AreaLaw& law, LevelRange range, FlowLaw flow_law);
+/// Section coefficient f of the law: for manning and chezy exp(mean over law_levels of [ln(area R^b) - (b+c)
+/// ln d]), d = z - law.h0, dry levels left out; for critical w sqrt(g/c) (2c/(2c+1))^(c+1/2) (Chow 1959,
+/// chapter 3, from memory: energy head d = y + A/(2T) over a section of area w y^c). `law` must come from a
+/// fit with status ok.
+[[nodiscard]] double section_coefficient(const SectionPart& part, const AreaLaw& law, LevelRange range,
+                                         FlowLaw flow_law);
 
 }  // namespace scourbook::hydraulics
