@@ -2,11 +2,11 @@
 // The arithmetic of x^y, inline and without branches, so that a loop over many values can be turned into
 // vector code that gives the same bits as one call. Callers outside the hot loops use power.hpp.
 //
-// Only + - x / on binary64 (round to nearest) and shifts and sums of 64-bit integers. Built with
-// -ffp-contract=off: the splittings below are exact only if no product is fused with a sum.
-// Exact products and sums follow Dekker, Numer. Math. 18 (1971) 224-242. The polynomials interpolate at
-// Chebyshev points; they were computed with 60 digits, and the bounds given are those of the rounded
-// coefficients.
+// Only + - x / on binary64 (round to nearest) and bit operations, shifts and sums of 64-bit integers. Built
+// with -ffp-contract=off. Extra precision comes from pairs whose leading number keeps 26 significant bits: a
+// product of two such numbers is exact (the splitting of Dekker, Numer. Math. 18 (1971) 224-242, by cutting
+// off bits). The polynomials interpolate at Chebyshev points; they were computed with 60 digits, and the
+// bounds given are those of the rounded coefficients.
 
 #include <bit>
 #include <cfloat>
@@ -18,34 +18,26 @@ namespace scourbook::hydraulics::kernel {
 static_assert(std::numeric_limits<double>::is_iec559 && FLT_EVAL_METHOD == 0,
               "needs plain binary64 arithmetic");
 
-/// An unevaluated sum hi + lo, |lo| at most about one unit in the last place of hi.
+/// An unevaluated sum: `lead` with at most 26 significant bits, `rest` below 2^-25 of it.
 struct Pair {
-  double hi, lo;
+  double lead, rest;
 };
 
-/// a + b exactly; requires |a| >= |b| or a = 0.
-inline Pair sum_ordered(double a, double b) {
-  const double s = a + b;
-  return {s, b - (s - a)};
+/// a with the last 27 bits of its significand cut off.
+inline double leading(double a) {
+  return std::bit_cast<double>(std::bit_cast<std::uint64_t>(a) & 0xfffffffff8000000);
 }
 
-/// a b exactly, for |a|, |b| < 2^990 and a product far from underflow.
-inline Pair product(double a, double b) {
-  constexpr double kSplit = 134217729.0;  // 2^27 + 1
-  const double ca = kSplit * a, cb = kSplit * b;
-  const double ah = ca - (ca - a), bh = cb - (cb - b);
-  const double al = a - ah, bl = b - bh;
-  const double p = a * b;
-  return {p, ((ah * bh - p) + ah * bl + al * bh) + al * bl};
+/// a b for a pair a; the first number holds 52 bits at most, the sum of both is good to about 2^-75 of it.
+struct Product {
+  double high, low;
+};
+inline Product product(double y, Pair a) {
+  const double y_lead = leading(y);
+  return {y_lead * a.lead, (y - y_lead) * a.lead + y * a.rest};
 }
 
-/// The product of two pairs, to about 2^-102 of it.
-inline Pair product(Pair a, Pair b) {
-  const Pair p = product(a.hi, b.hi);
-  return sum_ordered(p.hi, p.lo + (a.hi * b.lo + a.lo * b.hi));
-}
-
-/// log2 x for a normal x > 0, hi + lo together to about 2^-62 of |log2 x|, also where x is next to 1.
+/// log2 x for a normal x > 0, good to about 2^-63 of |log2 x|, also where x is next to 1.
 ///   x = 2^k m, m in [sqrt(1/2), sqrt(2));  s = (m - 1) / (m + 1), u = s^2
 ///   log2 m = (2 / ln 2) atanh(s) = 2 / (3 ln 2) s (3 + u + u^2 q(u))
 inline Pair log2_pair(double x) {
@@ -57,37 +49,47 @@ inline Pair log2_pair(double x) {
   const double k = std::bit_cast<double>(biased | 0x4330000000000000) - (kTwoTo52 + 1023.0);
   const double m = std::bit_cast<double>(std::bit_cast<std::uint64_t>(x) - (biased << 52) + kOne);
 
-  // s as a pair: quotient, then the exact remainder over the divisor
-  const double n = m - 1.0;  // exact
-  const double d = m + 1.0;
-  const double d_lo = m - (d - 1.0);
-  const double inverse = 1.0 / d;
-  const double s_hi = n * inverse;
-  const Pair back = product(s_hi, d);
-  const Pair s{s_hi, ((n - back.hi) - back.lo - s_hi * d_lo) * inverse};
+  // s: the leading bits of the quotient, then the exact remainder over the divisor
+  const double numerator = m - 1.0;  // exact
+  const double inverse = 1.0 / (m + 1.0);
+  const double s = numerator * inverse;
+  const double s_lead = leading(s);
+  const double divisor_lead = leading(m + 1.0);
+  const double divisor_rest = m - (divisor_lead - 1.0);
+  const double s_rest = ((numerator - s_lead * divisor_lead) - s_lead * divisor_rest) * inverse;
 
   // q(u); its error is below 6e-20 in log2 m
-  const Pair u = product(s.hi, s.hi);
-  const double v = u.hi * u.hi;
+  const double u = s * s, v = u * u;
   const double even = 0x1.3333333333337p-1 +
                       v * (0x1.55555561ec58cp-2 + v * (0x1.d8a514cd28358p-3 + v * 0x1.8cb3dd8a12e92p-3));
   const double odd = 0x1.b6db6db6d57d9p-2 + v * (0x1.1745c7755e286p-2 + v * 0x1.982519207348dp-3);
-  const double rest = (u.lo + 2.0 * s.hi * s.lo) + v * (even + u.hi * odd);
-  const Pair head = sum_ordered(3.0, u.hi);
-  const Pair sum{head.hi, head.lo + rest};
 
-  constexpr Pair kTwoThirdsOverLn2{0x1.ec709dc3a03fdp-1, 0x1.d27f05548af0cp-55};
-  const Pair log2_m = product(product(s, sum), kTwoThirdsOverLn2);
-  const Pair whole = sum_ordered(k, log2_m.hi);
-  return sum_ordered(whole.hi, whole.lo + log2_m.lo);
+  // 3 + u + u^2 q, u itself from the exact square of s_lead
+  const double square = s_lead * s_lead;
+  const double small = s_rest * (s_lead + s) + v * (even + u * odd);
+  const double sum_lead = leading(3.0 + square + small);
+  const double sum_rest = small - ((sum_lead - 3.0) - square);
+
+  // times s, then times 2 / (3 ln 2)
+  constexpr double kFactor = 0x1.ec709dc3a03fdp-1, kFactorLead = 0x1.ec709d8000000p-1,
+                   kFactorRest = 0x1.0e80ff5d27f05p-27;
+  const double high = s_lead * sum_lead;
+  const double low = s_rest * sum_lead + s * sum_rest;
+  const double product_lead = leading(high + low);
+  const double product_rest = low - (product_lead - high);
+  const double z_high = kFactorLead * product_lead;
+  const double z_low = kFactorRest * product_lead + kFactor * product_rest;
+
+  const double lead = leading((z_high + z_low) + k);
+  return {lead, z_low - ((lead - k) - z_high)};
 }
 
-/// 2^(hi + lo) for |hi| < 1022; the polynomial's own relative error is below 3e-17.
-inline double exp2_pair(Pair p) {
+/// 2^(high + low) for |high| < 1022; the polynomial's own relative error is below 3e-17.
+inline double exp2_sum(Product p) {
   constexpr double kToInteger = 6755399441055744.0;  // 1.5 x 2^52: adding it rounds to a whole number
-  const double shifted = p.hi + kToInteger;
+  const double shifted = p.high + kToInteger;
   const double whole = shifted - kToInteger;
-  const double r = (p.hi - whole) + p.lo;  // in [-1/2, 1/2]
+  const double r = (p.high - whole) + p.low;  // |r| <= 1/2 but for the size of low
   const double v = r * r;
   // (2^r - 1) / r
   const double even =
@@ -106,16 +108,9 @@ inline double exp2_pair(Pair p) {
   return mantissa * scale;
 }
 
-/// y log2 x as a pair, x normal and above 0.
-inline Pair log2_of_power(double x, double y) {
-  const Pair log2_x = log2_pair(x);
-  const Pair p = product(y, log2_x.hi);
-  return sum_ordered(p.hi, p.lo + y * log2_x.lo);
-}
-
 /// x^y for a normal x > 0 and |y log2 x| < 1000: bit for bit what reproducible_pow gives there.
 inline double pow_normal(double x, double y) {
-  return exp2_pair(log2_of_power(x, y));
+  return exp2_sum(product(y, log2_pair(x)));
 }
 
 }  // namespace scourbook::hydraulics::kernel
