@@ -1,6 +1,6 @@
 #pragma once
-// The book: one SQLite file that holds a network's curves and everything they rest on. Append-only: every row names
-// the act that wrote it; corrections are new versions. All SQL of the program stands in this folder.
+// The book: one SQLite file that holds a network's curves and everything they rest on. Append-only: every row
+// names the act that wrote it; corrections are new versions. All SQL of the program stands in this folder.
 
 #include <functional>
 #include <memory>
@@ -21,12 +21,12 @@ namespace scourbook::store {
 
 /// Thresholds of a book, stored rows; the defaults are proposed by us.
 struct Settings {
-  std::int64_t longest_gap_minutes = 360;     ///< readings further apart than this have no flow between them
-  std::int64_t published_digits = 3;          ///< significant digits of a published flow
-  std::int64_t published_decimals = 3;        ///< and at most so many decimals, m3/s
-  double least_share_of_day = 0.8;            ///< a day mean over a smaller share of the day is not given
-  double estimate_above_gauged = 1.5;         ///< times the curve's largest gauging: quality estimate
-  double poor_above_lineage = 1.5;            ///< times the lineage's largest gauging: quality poor
+  std::int64_t longest_gap_minutes = 360;  ///< readings further apart than this have no flow between them
+  std::int64_t published_digits = 3;       ///< significant digits of a published flow
+  std::int64_t published_decimals = 3;     ///< and at most so many decimals, m3/s
+  double least_share_of_day = 0.8;         ///< a day mean over a smaller share of the day is not given
+  double estimate_above_gauged = 1.5;      ///< times the curve's largest gauging: quality estimate
+  double poor_above_lineage = 1.5;         ///< times the lineage's largest gauging: quality poor
 };
 
 struct FileRecord {
@@ -74,7 +74,7 @@ struct PublishedMonth {
   std::vector<std::int64_t> u95_tenth_pct;         ///< 0 where there is no value
   std::vector<Flags> flags;
   std::vector<Quality> quality;
-  std::vector<int> curve;                          ///< 0 where none
+  std::vector<int> curve;  ///< 0 where none
 };
 struct Publication {
   int number = 0;
@@ -100,7 +100,7 @@ struct Damage {
 
 /// What an act is written with.
 struct ActHead {
-  std::string who;      ///< required
+  std::string who;  ///< required
   std::string station;
   std::string reason;
   std::string command;
@@ -111,10 +111,12 @@ class Writer;
 class Book {
  public:
   /// Creates a new book; refuses an existing file. The first act stores the settings.
-  [[nodiscard]] static Book create(const std::string& path, const ActHead& head, const Settings& settings = {});
+  [[nodiscard]] static Book create(const std::string& path, const ActHead& head,
+                                   const Settings& settings = {});
   /// Opens for reading only. Throws StoreError not_a_book / newer / damaged / refused.
   [[nodiscard]] static Book open_to_read(const std::string& path);
-  /// Opens for writing: migrates older schemas (a book of an older schema is only migrated here), warns on a network file system.
+  /// Opens for writing: migrates older schemas (a book of an older schema is only migrated here), warns on a
+  /// network file system.
   [[nodiscard]] static Book open_to_write(const std::string& path);
   Book(Book&&) noexcept;
   Book& operator=(Book&&) noexcept;
@@ -128,38 +130,53 @@ class Book {
   [[nodiscard]] Settings settings(Known known = {}) const;
   [[nodiscard]] std::optional<FileRecord> file(std::int64_t id) const;
   [[nodiscard]] std::vector<FileRecord> files(Known known = {}) const;
-  /// Number of the last act that changed the station's stage, stage corrections or gauge zero, at most known.act; 0 if none.
+  /// Number of the last act that changed the station's stage, stage corrections or gauge zero, at most
+  /// known.act; 0 if none.
   [[nodiscard]] std::int64_t data_version(const std::string& station, Known known = {}) const;
 
   // ---- field records: newest version known; withdrawn ones left out ----
   [[nodiscard]] std::vector<Stored<Station>> stations(Known known = {}) const;
   [[nodiscard]] std::optional<Stored<Station>> station(const std::string& id, Known known = {}) const;
-  [[nodiscard]] std::vector<Stored<GaugeZeroRow>> gauge_zeros(const std::string& station, Known known = {}) const;  ///< by valid_from
+  [[nodiscard]] std::vector<Stored<GaugeZeroRow>> gauge_zeros(const std::string& station,
+                                                              Known known = {}) const;  ///< by valid_from
   struct ReachId {
     std::int64_t row = 0;
     Stored<ReachRow> stored;
   };
-  [[nodiscard]] std::vector<ReachId> reach_rows(const std::string& station, Known known = {}) const;  ///< by valid_from, control, cross-section, part
-  [[nodiscard]] std::optional<ReachId> reach_row(const std::string& station, std::int64_t row, int version) const;
-  [[nodiscard]] std::vector<Stored<Survey>> surveys(const std::string& station, Known known = {}) const;  ///< by surveyed_at, with points
-  [[nodiscard]] std::optional<Stored<Survey>> survey(const std::string& station, const std::string& id, Known known = {}) const;
-  [[nodiscard]] std::optional<Stored<Survey>> survey_version(const std::string& station, const std::string& id, int version) const;
-  [[nodiscard]] std::vector<Stored<Gauging>> gaugings(const std::string& station, Known known = {}) const;  ///< by middle time
-  [[nodiscard]] std::optional<Stored<Gauging>> gauging(const std::string& station, const std::string& id, Known known = {}) const;
-  [[nodiscard]] std::optional<Stored<Gauging>> gauging_version(const std::string& station, const std::string& id, int version) const;
-  [[nodiscard]] std::vector<Stored<StageCorrection>> stage_corrections(const std::string& station, Known known = {}) const;  ///< by from, then act
+  [[nodiscard]] std::vector<ReachId> reach_rows(
+      const std::string& station, Known known = {}) const;  ///< by valid_from, control, cross-section, part
+  [[nodiscard]] std::optional<ReachId> reach_row(const std::string& station, std::int64_t row,
+                                                 int version) const;
+  [[nodiscard]] std::vector<Stored<Survey>> surveys(const std::string& station,
+                                                    Known known = {}) const;  ///< by surveyed_at, with points
+  [[nodiscard]] std::optional<Stored<Survey>> survey(const std::string& station, const std::string& id,
+                                                     Known known = {}) const;
+  [[nodiscard]] std::optional<Stored<Survey>> survey_version(const std::string& station,
+                                                             const std::string& id, int version) const;
+  [[nodiscard]] std::vector<Stored<Gauging>> gaugings(const std::string& station,
+                                                      Known known = {}) const;  ///< by middle time
+  [[nodiscard]] std::optional<Stored<Gauging>> gauging(const std::string& station, const std::string& id,
+                                                       Known known = {}) const;
+  [[nodiscard]] std::optional<Stored<Gauging>> gauging_version(const std::string& station,
+                                                               const std::string& id, int version) const;
+  [[nodiscard]] std::vector<Stored<StageCorrection>> stage_corrections(
+      const std::string& station, Known known = {}) const;  ///< by from, then act
 
   // ---- stage ----
   [[nodiscard]] std::vector<UtcMonth> stage_months(const std::string& station, Known known = {}) const;
   [[nodiscard]] StageBlock stage_block(const std::string& station, UtcMonth month, Known known = {}) const;
-  [[nodiscard]] std::optional<std::pair<Instant, Instant>> stage_span(const std::string& station, Known known = {}) const;  ///< first and last reading
+  [[nodiscard]] std::optional<std::pair<Instant, Instant>> stage_span(
+      const std::string& station, Known known = {}) const;  ///< first and last reading
   /// Origin of the reading of `station` at exactly `time`.
-  [[nodiscard]] std::optional<ReadingOrigin> reading_origin(const std::string& station, Instant time, Known known = {}) const;
+  [[nodiscard]] std::optional<ReadingOrigin> reading_origin(const std::string& station, Instant time,
+                                                            Known known = {}) const;
 
   // ---- curves and history ----
   [[nodiscard]] std::vector<RatingCurve> curves(const std::string& station, Known known = {}) const;
-  [[nodiscard]] std::optional<RatingCurve> curve(const std::string& station, int number, Known known = {}) const;
-  [[nodiscard]] std::int64_t curve_act(const std::string& station, int number) const;  ///< the act that stored it
+  [[nodiscard]] std::optional<RatingCurve> curve(const std::string& station, int number,
+                                                 Known known = {}) const;
+  [[nodiscard]] std::int64_t curve_act(const std::string& station,
+                                       int number) const;  ///< the act that stored it
   [[nodiscard]] std::vector<Edition> editions(const std::string& station, Known known = {}) const;
   [[nodiscard]] std::optional<Edition> edition(const std::string& station, int number) const;
   [[nodiscard]] std::optional<Edition> newest_edition(const std::string& station, Known known = {}) const;
@@ -177,9 +194,10 @@ class Book {
   [[nodiscard]] Writer begin(const ActHead& head);
 
   // ---- verification ----
-  /// Recomputes chain, digests of every act's rows, piece digests, foreign keys, SQLite's own integrity check, rows without an act.
-  /// `progress(done, total)` may be empty.
-  [[nodiscard]] std::vector<Damage> verify(const std::function<void(std::int64_t, std::int64_t)>& progress = {}) const;
+  /// Recomputes chain, digests of every act's rows, piece digests, foreign keys, SQLite's own integrity
+  /// check, rows without an act. `progress(done, total)` may be empty.
+  [[nodiscard]] std::vector<Damage> verify(
+      const std::function<void(std::int64_t, std::int64_t)>& progress = {}) const;
 
  private:
   friend class Writer;
@@ -190,17 +208,17 @@ class Book {
 
 /// How a stage take went.
 struct StageTaken {
-  std::int64_t added = 0;      ///< new readings
-  std::int64_t repeated = 0;   ///< equal to held ones, skipped
+  std::int64_t added = 0;     ///< new readings
+  std::int64_t repeated = 0;  ///< equal to held ones, skipped
   std::int64_t pieces = 0;
-  std::int64_t merged = 0;     ///< months rewritten into one merged piece
+  std::int64_t merged = 0;  ///< months rewritten into one merged piece
 };
 
 /// A held reading that a new file contradicts.
 struct StageOverlap {
   std::int64_t line = 0;
   Instant time{};
-  std::int64_t held = kMissing;   ///< ticks of 1e-8 m
+  std::int64_t held = kMissing;  ///< ticks of 1e-8 m
   std::int64_t given = kMissing;
 };
 
@@ -210,18 +228,25 @@ class Writer {
   Writer(Writer&&) noexcept;
   ~Writer();
   [[nodiscard]] std::int64_t act() const;
-  [[nodiscard]] std::int64_t add_file(const std::string& name, std::int64_t bytes, const std::string& sha256, const std::string& kind);
+  [[nodiscard]] std::int64_t add_file(const std::string& name, std::int64_t bytes, const std::string& sha256,
+                                      const std::string& kind);
 
-  /// Each adds version 1, or the next version where the key is held and `correct` is true; throws refused where it is held and
-  /// `correct` is false (readers find that first and report it as a finding). Withdrawn versions hide the record.
+  /// New thresholds; the newest rows count from this act on. All must be finite.
+  void add_settings(const Settings& settings);
+
+  /// Each adds version 1, or the next version where the key is held and `correct` is true; throws refused
+  /// where it is held and `correct` is false (readers find that first and report it as a finding). Withdrawn
+  /// versions hide the record.
   void add(const Station& record, SourceLine source, bool correct = false, bool withdrawn = false);
   void add(const GaugeZeroRow& record, SourceLine source, bool correct = false, bool withdrawn = false);
   void add(const ReachRow& record, SourceLine source, bool correct = false, bool withdrawn = false);
-  void add(const Survey& record, SourceLine source, const std::vector<std::int64_t>& point_lines, bool correct = false, bool withdrawn = false);
+  void add(const Survey& record, SourceLine source, const std::vector<std::int64_t>& point_lines,
+           bool correct = false, bool withdrawn = false);
   void add(const Gauging& record, SourceLine source, bool correct = false, bool withdrawn = false);
   void add(const StageCorrection& record, SourceLine source, bool correct = false, bool withdrawn = false);
 
-  /// Readings of `series` that contradict held ones (a different value at a held time); empty when it may be added.
+  /// Readings of `series` that contradict held ones (a different value at a held time); empty when it may be
+  /// added.
   [[nodiscard]] std::vector<StageOverlap> overlaps(const StageSeries& series, std::size_t most = 50) const;
   /// Adds one piece per UTC month; repeated readings are skipped. With `correct` it replaces what it spans.
   StageTaken add_stage(const StageSeries& series, std::int64_t file, bool correct = false);
@@ -232,7 +257,8 @@ class Writer {
   [[nodiscard]] ReplayRecord add_replay(ReplayRecord replay);
   [[nodiscard]] Publication add_publication(Publication publication);
 
-  /// Digests the rows, links the act into the chain and commits, synchronously. Throws io / busy; then nothing is stored.
+  /// Digests the rows, links the act into the chain and commits, synchronously. Throws io / busy; then
+  /// nothing is stored.
   Act commit();
 
  private:

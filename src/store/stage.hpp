@@ -18,8 +18,8 @@ enum class StageUnit { metre, foot };
 /// Missing reading in a piece or block.
 inline constexpr std::int64_t kMissing = std::numeric_limits<std::int64_t>::min();
 
-/// The recorded whole number `value` (in units of 10^-decimals of the unit) in ticks of 1e-8 m, rounded half away from zero;
-/// kMissing stays. Exact for metres up to 8 decimals and feet up to 4.
+/// The recorded whole number `value` (in units of 10^-decimals of the unit) in ticks of 1e-8 m, rounded half
+/// away from zero; kMissing stays. Exact for metres up to 8 decimals and feet up to 4.
 [[nodiscard]] std::int64_t ticks_of(std::int64_t value, StageUnit unit, int decimals);
 
 /// One recorded reading on its way into the book.
@@ -38,14 +38,15 @@ struct StageSeries {
   std::vector<StageReading> readings;
 };
 
-/// The readings in force of one UTC month: from the latest pieces known. Arrays of equal length, times rising.
+/// The readings in force of one UTC month: from the latest pieces known. Arrays of equal length, times
+/// rising.
 struct StageBlock {
   UtcMonth month{};
   std::vector<std::int64_t> time_ms;
-  std::vector<std::int64_t> ticks;       ///< stage in 1e-8 m, kMissing where missing
+  std::vector<std::int64_t> ticks;  ///< stage in 1e-8 m, kMissing where missing
   std::vector<Quality> quality;
-  std::vector<std::int32_t> piece;       ///< index into `pieces`
-  std::vector<std::int64_t> pieces;      ///< piece ids
+  std::vector<std::int32_t> piece;   ///< index into `pieces`
+  std::vector<std::int64_t> pieces;  ///< piece ids
 };
 
 /// Where one reading came from.
