@@ -11,28 +11,21 @@ namespace {
 
 using Kind = StoreError::Kind;
 
-struct Held {
-  int version = 0;
-  bool withdrawn = false;
-};
-
 /// The newest version of a key; 0 where there is none.
 template <class... Key>
-Held held(const SQLite::Database& db, const std::string& table, const std::string& where, const Key&... key) {
-  Query query(
-      db, "SELECT version, withdrawn FROM " + table + " WHERE " + where + " ORDER BY version DESC LIMIT 1");
+int held(const SQLite::Database& db, const std::string& table, const std::string& where, const Key&... key) {
+  Query query(db, "SELECT version FROM " + table + " WHERE " + where + " ORDER BY version DESC LIMIT 1");
   query.put(key...);
-  if (!query.next()) return {};
-  return {query.small(0), query.integer(1) != 0};
+  return query.next() ? query.small(0) : 0;
 }
 
-/// The version to write. A held record needs a correction; a withdrawn one may come back without.
-int next_version(const Held& held, bool correct, const std::string& what) {
-  if (held.version > 0 && !held.withdrawn && !correct) {
+/// The version to write. A record that is held, or was withdrawn, needs a correction.
+int next_version(int held_version, bool correct, const std::string& what) {
+  if (held_version > 0 && !correct) {
     throw StoreError(Kind::refused,
                      what + " is held already; take it in with --correct --reason to write a new version");
   }
-  return held.version + 1;
+  return held_version + 1;
 }
 
 /// How a row begins: version, act, withdrawn, file, line.
@@ -85,8 +78,8 @@ void Writer::add(const Station& s, SourceLine source, bool correct, bool withdra
 
 void Writer::add(const GaugeZeroRow& row, SourceLine source, bool correct, bool withdrawn) {
   guarded([&] {
-    const Held before = held(impl_->db(), "gauge_zero", "station = ? AND valid_from_ms = ?", row.station,
-                             to_ms(row.valid_from));
+    const int before = held(impl_->db(), "gauge_zero", "station = ? AND valid_from_ms = ?", row.station,
+                            to_ms(row.valid_from));
     const int version = next_version(before, correct, "this gauge zero of " + row.station);
     Query insert(
         impl_->db(),
@@ -101,7 +94,7 @@ void Writer::add(const GaugeZeroRow& row, SourceLine source, bool correct, bool 
 void Writer::add(const ReachRow& r, SourceLine source, bool correct, bool withdrawn) {
   guarded([&] {
     const std::int64_t row = reach_row_of(impl_->db(), r);
-    const Held before = held(impl_->db(), "reach", "row = ?", row);
+    const int before = held(impl_->db(), "reach", "row = ?", row);
     const int version = next_version(before, correct, "this reach row of " + r.station);
     Query insert(
         impl_->db(),
@@ -122,7 +115,7 @@ void Writer::add(const Survey& s, SourceLine source, const std::vector<std::int6
                  bool correct, bool withdrawn) {
   assert(point_lines.size() == s.points.size());
   guarded([&] {
-    const Held before = held(impl_->db(), "survey", "station = ? AND id = ?", s.station, s.id);
+    const int before = held(impl_->db(), "survey", "station = ? AND id = ?", s.station, s.id);
     const int version = next_version(before, correct, "survey " + s.id + " of " + s.station);
     Query insert(impl_->db(),
                  "INSERT INTO survey (station, id, version, act, withdrawn, file, line, surveyed_at_ms, "
@@ -145,7 +138,7 @@ void Writer::add(const Survey& s, SourceLine source, const std::vector<std::int6
 
 void Writer::add(const Gauging& g, SourceLine source, bool correct, bool withdrawn) {
   guarded([&] {
-    const Held before = held(impl_->db(), "gauging", "station = ? AND id = ?", g.station, g.id);
+    const int before = held(impl_->db(), "gauging", "station = ? AND id = ?", g.station, g.id);
     const int version = next_version(before, correct, "gauging " + g.id + " of " + g.station);
     Query insert(
         impl_->db(),
@@ -165,8 +158,8 @@ void Writer::add(const Gauging& g, SourceLine source, bool correct, bool withdra
 
 void Writer::add(const StageCorrection& s, SourceLine source, bool correct, bool withdrawn) {
   guarded([&] {
-    const Held before = held(impl_->db(), "stage_correction", "station = ? AND from_ms = ? AND until_ms = ?",
-                             s.station, to_ms(s.from), to_ms(s.until));
+    const int before = held(impl_->db(), "stage_correction", "station = ? AND from_ms = ? AND until_ms = ?",
+                            s.station, to_ms(s.from), to_ms(s.until));
     const int version = next_version(before, correct, "this stage correction of " + s.station);
     Query insert(
         impl_->db(),
