@@ -67,9 +67,10 @@ Line fit_line(const std::vector<Sample>& samples, double x) {
 }
 
 /// The x in [kOffsetFrom, kOffsetTo] with the smallest sum of squares: the best of a grid, then the zero of
-/// the derivative beside it by bisection; an end of the interval where the sum still falls towards it.
+/// the derivative beside it by bisection, which runs to an end of the interval where the sum falls towards
+/// it.
 double best_offset(const std::vector<Sample>& samples) {
-  constexpr int kSteps = 95;
+  constexpr int kSteps = 19;
   const auto grid = [](int i) { return kOffsetFrom + (kOffsetTo - kOffsetFrom) * i / kSteps; };
   int best = 0;
   double least = std::numeric_limits<double>::infinity();
@@ -81,8 +82,6 @@ double best_offset(const std::vector<Sample>& samples) {
     }
   }
   double low = grid(std::max(best - 1, 0)), high = grid(std::min(best + 1, kSteps));
-  if (best == 0 && fit_line(samples, low).slope >= 0) return low;
-  if (best == kSteps && fit_line(samples, high).slope <= 0) return high;
   for (int i = 0; i < 60; ++i) {
     const double middle = 0.5 * (low + high);
     (fit_line(samples, middle).slope > 0 ? high : low) = middle;

@@ -69,6 +69,12 @@ TEST_CASE("80 levels from 5 % of the depth to the top") {
   CHECK(levels.front() == Approx(12.1).epsilon(1e-15));
   CHECK(levels.back() == 14);
   for (std::size_t i = 1; i < levels.size(); ++i) CHECK(levels[i] - levels[i - 1] == Approx(1.9 / 79));
+  // the last one is the top itself, whatever rounding does: above it the section's walls would begin
+  Random random(20);
+  for (int i = 0; i < 200; ++i) {
+    const double from = random.between(-5, 0), to = from + random.between(0.1, 9);
+    CHECK(law_levels({from, to}).back() == to);
+  }
 }
 
 TEST_CASE("a triangle has c = 2, a rectangle c = 1, wherever the datum") {

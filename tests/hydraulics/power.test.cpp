@@ -169,6 +169,21 @@ TEST_CASE("x^y over the whole range of results, x next to 1 too") {
   check(worst);
 }
 
+TEST_CASE("powers and logarithms of subnormal numbers") {
+  if (!kLongDoubleIsLonger) return;
+  Worst power, log2;
+  Random random(17);
+  for (int i = 0; i < 50'000; ++i) {
+    const double x = std::bit_cast<double>(random.bits() >> (12 + random.below(51)) | 1);
+    REQUIRE(x < DBL_MIN);
+    const double y = random.between(-0.9, 0.9);
+    power.look(reproducible_pow(x, y), std::pow(wide(x), y), x, y);
+    log2.look(reproducible_log2(x), std::log2(wide(x)), x);
+  }
+  check(power);
+  check(log2);
+}
+
 TEST_CASE("logarithms and exponentials against the long double functions") {
   if (!kLongDoubleIsLonger) return;
   Worst log2, ln, exp2, exp;
@@ -276,6 +291,16 @@ TEST_CASE("an array gives the bits of one call each, whatever is in it") {
       reproducible_pow(in_place, y, in_place);
       CHECK(in_place == out);
     }
+  }
+}
+
+TEST_CASE("an array whose powers leave the range of the vector code") {
+  Random random(18);
+  for (const double y : {300.0, -300.0}) {
+    std::vector<double> x(256), out(256);
+    for (double& value : x) value = std::exp2(random.between(3.2, 3.6));
+    reproducible_pow(x, y, out);
+    for (std::size_t i = 0; i < x.size(); ++i) REQUIRE(out[i] == reproducible_pow(x[i], y));
   }
 }
 

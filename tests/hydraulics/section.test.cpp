@@ -119,6 +119,16 @@ TEST_CASE("an island of another part: water leaves the main part at the island's
         5 + 4 + 5 + 25.0 / 6);
 }
 
+TEST_CASE("an island with edges of one elevation, and a wall that is another part") {
+  const std::vector<SurveyPoint> island{point("A", "main", 0, 6),     point("A", "main", 5, 0),
+                                        point("A", "island", 9, 2.5), point("A", "main", 20, 2.5),
+                                        point("A", "main", 25, 1),    point("A", "main", 30, 7)};
+  CHECK(SectionPart(island, "A", "main").lower_end_m() == 2.5);
+  const std::vector<SurveyPoint> wall{point("A", "main", 0, 6), point("A", "wall", 5, 1),
+                                      point("A", "main", 5, 3), point("A", "main", 9, 7)};
+  CHECK(SectionPart(wall, "A", "main").lower_end_m() == 1);
+}
+
 TEST_CASE("elevations are distinct and rise") {
   CHECK(section({{0, 2}, {2, 0}, {4, 2}, {6, 1}, {8, 3}}).elevations_m() == std::vector<double>{0, 1, 2, 3});
   CHECK(SectionPart(std::vector<Strip>{}).elevations_m().empty());

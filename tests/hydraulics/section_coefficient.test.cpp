@@ -63,6 +63,22 @@ TEST_CASE("f is the mean of ln(area R^b) against the depth's power, by its defin
   }
 }
 
+TEST_CASE("dry levels take no part in f") {
+  // from 1 m below a level bed: the law is that of the levels above the bed, and so is f
+  const SectionPart bed = section({{0, 0}, {7, 0}});
+  const LevelRange range{-1, 3};
+  const AreaLaw law = fit_area_law(bed, range).law;
+  double sum = 0;
+  int wet = 0;
+  for (const double z : law_levels(range)) {
+    if (z <= 0) continue;
+    sum += std::log(7 * std::pow(z, 5.0 / 3)) - (2.0 / 3 + law.c) * std::log(z + 1);
+    ++wet;
+  }
+  REQUIRE(wet == 63);
+  CHECK(section_coefficient(bed, law, range, FlowLaw::manning) == Approx(std::exp(sum / wet)).epsilon(1e-12));
+}
+
 TEST_CASE("f of a wide power-law section tends to w c^-b") {
   // R -> area / width = d / c as the banks flatten; the error falls with the square of the width
   const auto gap = [](double bank_slope, FlowLaw flow_law) {

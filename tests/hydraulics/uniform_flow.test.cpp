@@ -135,6 +135,19 @@ TEST_CASE("the flow over any crest is the greatest discharge under its head, and
   }
 }
 
+TEST_CASE("critical surfaces just at bed points are found as well") {
+  Random random(43);
+  for (int i = 0; i < 200; ++i) {
+    const SectionPart crest = section(made::natural_points(random));
+    for (const double y : crest.elevations_m()) {
+      const SectionElements e = crest.at(y);
+      if (!(e.top_width_m > 0)) continue;
+      const double head = y + e.area_m2 / (2 * e.top_width_m);
+      CHECK(crest_flow(crest, head, 1) >= e.area_m2 * std::sqrt(2 * kGravity * (head - y)));
+    }
+  }
+}
+
 TEST_CASE("a berm: the flow stays continuous where the critical surface leaps over the jump in width") {
   // notch 1 m wide and 0.5 m deep in a crest 21 m wide
   const SectionPart crest =
