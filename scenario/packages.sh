@@ -5,7 +5,7 @@ build_packages=(
   build-essential cmake ninja-build git
   libsqlitecpp-dev libsqlite3-dev sqlite3
   libeigen3-dev libhowardhinnant-date-dev libspdlog-dev libfmt-dev
-  libcli11-dev nlohmann-json3-dev libssl-dev zlib1g-dev catch2
+  libcli11-dev nlohmann-json3-dev libssl-dev zlib1g-dev libboost-math-dev catch2
 )
 
 # install_missing PACKAGE...: installs those that dpkg does not know as installed.

@@ -1,6 +1,6 @@
 #pragma once
-// A survey, what the reach rows say, the parent curve and a few gaugings -> a proposed curve with the fate of every
-// coefficient. Pure: no store, no clock, no files.
+// A survey, what the reach rows say, the parent curve and a few gaugings -> a proposed curve with the fate of
+// every coefficient. Pure: no store, no clock, no files.
 
 #include <optional>
 #include <string>
@@ -43,9 +43,9 @@ struct Input {
   std::string station;
   Survey survey;
   int survey_version = 1;
-  std::vector<ReachInput> reach;           ///< rows in force at `from`, one per control
-  std::optional<Parent> parent;            ///< none: a first curve
-  std::vector<GaugingAtLevel> gaugings;    ///< those whose middle lies in the period, by time
+  std::vector<ReachInput> reach;         ///< rows in force at `from`, one per control
+  std::optional<Parent> parent;          ///< none: a first curve
+  std::vector<GaugingAtLevel> gaugings;  ///< those whose middle lies in the period, by time
   Instant from{};
   std::optional<Instant> until;
   Options options;
@@ -53,14 +53,14 @@ struct Input {
 
 enum class Status {
   not_run,
-  ok,        ///< a proposal; its diagnostics may still have failed tests
-  refused    ///< `refusals` say why, in words, and what to do
+  ok,      ///< a proposal; its diagnostics may still have failed tests
+  refused  ///< `refusals` say why, in words, and what to do
 };
 
 struct Result {
   Status status = Status::not_run;
   std::vector<std::string> refusals;
-  RatingCurve curve;             ///< number 0; ready to be stored
+  RatingCurve curve;  ///< number 0; ready to be stored
   /// The parent's coefficients beside it, by control of `curve` (none where the control is new).
   std::vector<std::optional<ControlCoefficients>> before;
 };

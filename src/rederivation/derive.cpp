@@ -1,0 +1,327 @@
+#include "rederivation/derive.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cassert>
+#include <cmath>
+#include <set>
+
+#include "rating/bands.hpp"
+#include "rating/evaluate.hpp"
+#include "rating/unknowns.hpp"
+#include "rederivation/diagnostics.hpp"
+#include "rederivation/inherited_control.hpp"
+#include "rederivation/offered_gaugings.hpp"
+#include "rederivation/prior_knowledge.hpp"
+#include "rederivation/surveyed_control.hpp"
+
+namespace scourbook::rederivation {
+namespace {
+
+constexpr double kPoorlyKnown = 0.15;  // sd of ln Q of the parent's curve
+constexpr double kLargeTrim = 3;       // prior sds
+
+using rating::Observation;
+
+/// Faults of the input that no computation can mend.
+std::vector<std::string> faults_of(const Input& input) {
+  std::vector<std::string> faults;
+  if (input.options.hold == HoldPolicy::flow_scale) {
+    faults.push_back("--hold flow-scale is not available in this version; velocity-scale and carried are");
+  }
+  if (input.reach.empty()) {
+    faults.push_back("no reach row is in force at the begin of the period; take in a reach file first");
+  }
+  int sections = 0, channels = 0;
+  std::set<std::string> names;
+  const auto overbank = std::count_if(input.reach.begin(), input.reach.end(), [](const ReachInput& r) {
+    return r.row.control == ControlKind::overbank;
+  });
+  for (const ReachInput& reach : input.reach) {
+    sections += reach.row.control == ControlKind::section;
+    channels += reach.row.control == ControlKind::channel;
+    const std::string name = control_name(reach.row, overbank > 1);
+    if (reach.row.control == ControlKind::overbank && !names.insert(name).second) {
+      faults.push_back(fmt::format("two overbank controls have the part {}; give their parts different names",
+                                   reach.row.part));
+    }
+  }
+  if (sections > 1)
+    faults.push_back("the reach file has more than one section control at this time; one is possible");
+  if (channels > 1)
+    faults.push_back("the reach file has more than one channel control at this time; one is possible");
+  return faults;
+}
+
+double top_of(const std::vector<SurveyedControl>& surveyed, const std::vector<ControlStart>& starts) {
+  // A crest's banks say nothing of the section at the gauge, where there is one.
+  double top = -1e300;
+  for (const bool crests : {false, true}) {
+    for (std::size_t i = 0; i < starts.size(); ++i) {
+      const ControlCoefficients& c = starts[i].control;
+      if ((c.kind == ControlKind::section) != crests) continue;
+      top = std::max(top, surveyed[i].found ? surveyed[i].top_m : c.range_to_m);
+    }
+    if (top > -1e300) return top;
+  }
+  return top;
+}
+
+RatingCurve curve_of(const Input& input, const std::vector<ControlStart>& starts) {
+  RatingCurve curve;
+  curve.station = input.station;
+  curve.form = CurveForm::power;
+  curve.hold = input.options.hold;
+  if (input.parent) {
+    curve.parent = input.parent->curve.number;
+    curve.lineage = input.parent->curve.lineage;
+  }
+  curve.survey = input.survey.id;
+  curve.survey_version = input.survey_version;
+  curve.from = input.from;
+  curve.until = input.until;
+  for (const ReachInput& reach : input.reach) curve.reach.push_back(reach.id);
+  for (const ControlStart& start : starts) {
+    curve.controls.push_back(start.control);
+    curve.carried = curve.carried || start.control.survey_fate == Fate::carried;
+  }
+  return curve;
+}
+
+/// Sets what is not held to its prior mean.
+void set_to_prior(RatingCurve& curve, const rating::Prior& prior, double top_m) {
+  const auto unknowns = rating::unknowns_of(curve);
+  for (std::size_t i = 0; i < unknowns.size(); ++i) {
+    if (!prior.held[i]) rating::set_value(curve, unknowns[i], prior.mean(static_cast<Eigen::Index>(i)));
+  }
+  rating::refresh(curve, top_m);
+}
+
+const ControlCoefficients* control_named(const RatingCurve& curve, const std::string& name) {
+  for (const ControlCoefficients& control : curve.controls) {
+    if (control.name == name) return &control;
+  }
+  return nullptr;
+}
+
+/// Holding what is itself hardly known would carry its error on: refused, with the ways on.
+std::optional<std::string> poorly_known(const Input& input, const std::vector<ControlStart>& starts,
+                                        const RatingCurve& survey_alone,
+                                        const std::vector<Observation>& used) {
+  if (!input.parent || input.options.hold != HoldPolicy::velocity_scale) return {};
+  const RatingCurve& parent = input.parent->curve;
+  const rating::Matrix covariance = rating::covariance_matrix(parent);
+  double worst = 0;
+  std::string at;
+  for (const Observation& seen : used) {
+    if (seen.role != Observation::Role::discharge) continue;
+    const rating::Flow flow = rating::evaluate(survey_alone, seen.level_m);
+    if (flow.control < 0 || starts[static_cast<std::size_t>(flow.control)].in_parent < 0) continue;
+    const ControlCoefficients& now = survey_alone.controls[static_cast<std::size_t>(flow.control)];
+    const ControlCoefficients& before =
+        parent.controls[static_cast<std::size_t>(starts[static_cast<std::size_t>(flow.control)].in_parent)];
+    const double sd = rating::sd_of_unknowns(parent, covariance, before.h0_m + (seen.level_m - now.h0_m));
+    if (sd > worst) {
+      worst = sd;
+      at = seen.gauging;
+    }
+  }
+  if (worst <= kPoorlyKnown) return {};
+  return fmt::format(
+      "curve {} is itself poorly known where gauging {} lies (sd of ln Q {:.2f}, over {:.2f}): holding its "
+      "velocity scale "
+      "exactly would carry that error on. Either let it be refined by the new gaugings with --hold carried, "
+      "or derive all "
+      "periods together",
+      parent.number, at, worst, kPoorlyKnown);
+}
+
+std::string fit_failure(rating::FitStatus status) {
+  switch (status) {
+    case rating::FitStatus::infeasible_start:
+      return "no curve of these controls gives flow at every gauging: offsets would have to lie above "
+             "gaugings; look at "
+             "the gaugings below, or leave one out with --leave-out";
+    case rating::FitStatus::rank_deficient:
+      return "the gaugings and what is known beforehand do not determine the curve (rank deficient)";
+    default:
+      return "the fit did not converge; look at the gaugings, or leave one out with --leave-out";
+  }
+}
+
+void remark_trims(RatingCurve& curve, const rating::Prior& prior) {
+  const auto unknowns = rating::unknowns_of(curve);
+  for (std::size_t i = 0; i < unknowns.size(); ++i) {
+    const auto kind = unknowns[i].kind;
+    const bool trim = kind == rating::UnknownKind::level_error || kind == rating::UnknownKind::e_k ||
+                      kind == rating::UnknownKind::ec;
+    const auto at = static_cast<Eigen::Index>(i);
+    const double sd = std::sqrt(prior.covariance(at, at));
+    const double move = rating::value_of(curve, unknowns[i]) - prior.mean(at);
+    if (!trim || prior.held[i] || std::abs(move) <= kLargeTrim * sd) continue;
+    curve.remarks.push_back(
+        fmt::format("trim {} moved by {:+.3f}, {:.1f} of its prior sds: is the survey, the gauge zero or "
+                    "a gauging wrong, or did the scale change?",
+                    rating::name_of(curve, unknowns[i]), move, std::abs(move) / sd));
+  }
+  for (const ControlCoefficients& control : curve.controls) {
+    if (control.surveyed_c + control.allowance_c + control.trim_c < rating::kLeastAreaExponent) {
+      curve.remarks.push_back(fmt::format("{}: the area exponent was bounded below at {}", control.name,
+                                          rating::kLeastAreaExponent));
+    }
+  }
+}
+
+/// Which of section and channel governs at levels between the higher offset and the top.
+void remark_governing(RatingCurve& curve, double top_m) {
+  const double from = rating::cease_to_flow_m(curve);
+  constexpr int kSteps = 200;
+  std::set<int> governing;
+  for (int i = 1; i <= kSteps; ++i) {
+    governing.insert(rating::evaluate(curve, from + (top_m - from) * i / kSteps).control);
+  }
+  const bool both = control_named(curve, "section") != nullptr && control_named(curve, "channel") != nullptr;
+  for (std::size_t k = 0; k < curve.controls.size(); ++k) {
+    const ControlCoefficients& control = curve.controls[k];
+    if (control.kind == ControlKind::overbank) {
+      if (control.h0_m >= top_m) {
+        curve.remarks.push_back(
+            fmt::format("{} never adds: its offset {:.3f} m lies above the surveyed top {:.3f} m",
+                        control.name, control.h0_m, top_m));
+      }
+    } else if (both && governing.count(static_cast<int>(k)) == 0) {
+      curve.remarks.push_back(
+          fmt::format("{} never governs between {:.3f} and {:.3f} m", control.name, from, top_m));
+    }
+  }
+  if (both && !curve.takeover_level_m) {
+    curve.remarks.push_back(
+        "the channel nowhere takes over from the section: the smaller of both flows counts at every "
+        "level");
+  }
+}
+
+void remark_buried_crest(RatingCurve& curve) {
+  const ControlCoefficients* section = control_named(curve, "section");
+  const ControlCoefficients* channel = control_named(curve, "channel");
+  if (section == nullptr || channel == nullptr || section->survey_fate != Fate::carried) return;
+  if (channel->lowest_point_m <= section->lowest_point_m) return;
+  curve.remarks.insert(
+      curve.remarks.begin(),
+      fmt::format("THE NEW CHANNEL BED ({:.3f} m) LIES ABOVE THE CARRIED CREST ({:.3f} m): the crest is "
+                  "likely buried or gone; survey it before this curve is used",
+                  channel->lowest_point_m, section->lowest_point_m));
+}
+
+void set_gauged_range(const Input& input, RatingCurve& curve) {
+  for (const CurveGauging& g : curve.gaugings) {
+    if (g.use == GaugingUse::left_out || !(g.discharge_m3s > 0)) continue;
+    curve.gauged_low_m3s = std::min(curve.gauged_low_m3s.value_or(g.discharge_m3s), g.discharge_m3s);
+    curve.gauged_high_m3s = std::max(curve.gauged_high_m3s.value_or(g.discharge_m3s), g.discharge_m3s);
+  }
+  curve.inferred = !curve.gauged_high_m3s.has_value();
+  curve.lineage_high_m3s = curve.gauged_high_m3s;
+  if (!input.parent) return;
+  const RatingCurve& parent = input.parent->curve;
+  if (curve.inferred) {
+    curve.gauged_low_m3s = parent.gauged_low_m3s;
+    curve.gauged_high_m3s = parent.gauged_high_m3s;
+  }
+  if (parent.lineage_high_m3s) {
+    curve.lineage_high_m3s = std::max(curve.lineage_high_m3s.value_or(0), *parent.lineage_high_m3s);
+  }
+}
+
+/// A fitted curve with everything that is stored beside it.
+void complete(const Input& input, const std::vector<SurveyedControl>& surveyed, const Knowledge& knowledge,
+              const OfferedGaugings& offered, const rating::GaugingFit& fit, double top_m,
+              RatingCurve& curve) {
+  const bool refined = input.options.hold == HoldPolicy::carried;
+  for (ControlCoefficients& control : curve.controls) {
+    control.trim_fate = Fate::refitted;
+    if (!refined || control.scale_fate == Fate::fresh) continue;
+    control.scale_fate = Fate::refitted;
+    control.allowance_fate = Fate::refitted;
+    control.calibrated_in = 0;
+  }
+  rating::store_covariance(curve, fit.covariance);
+  curve.gaugings = offered.records;
+  for (CurveGauging& record : curve.gaugings) judge(record, curve, offered.used);
+  set_gauged_range(input, curve);
+  curve.bands = rating::band_table(curve, fit.covariance, top_m);
+  remark_trims(curve, knowledge.prior);
+  for (const auto& gauging : fit.at_takeover) {
+    curve.remarks.push_back(fmt::format("takeover at gauging {}: the fit ended on it", gauging));
+  }
+  if (curve.inferred)
+    curve.remarks.push_back(
+        "no gauging in the period: the curve is inferred from the survey and what is held");
+  remark_governing(curve, top_m);
+  remark_buried_crest(curve);
+  curve.diagnostics =
+      diagnose({input, surveyed, knowledge.prior, offered.used, curve, fit.covariance, top_m});
+}
+
+std::vector<std::optional<ControlCoefficients>> before_of(const Input& input,
+                                                          const std::vector<ControlStart>& starts) {
+  std::vector<std::optional<ControlCoefficients>> before;
+  for (const ControlStart& start : starts) {
+    before.push_back(
+        start.in_parent < 0
+            ? std::nullopt
+            : std::optional(input.parent->curve.controls[static_cast<std::size_t>(start.in_parent)]));
+  }
+  return before;
+}
+
+Result refused(std::vector<std::string> refusals) {
+  Result result;
+  result.status = Status::refused;
+  result.refusals = std::move(refusals);
+  return result;
+}
+
+double highest_level(const Input& input, double top_m) {
+  for (const GaugingAtLevel& gauging : input.gaugings) top_m = std::max(top_m, gauging.level_m);
+  return top_m;
+}
+
+}  // namespace
+
+Result derive(const Input& input) {
+  auto faults = faults_of(input);
+  if (!faults.empty()) return refused(std::move(faults));
+  const auto surveyed = survey_controls(input);
+  Inheritance inheritance = inherit(input, surveyed);
+  if (!inheritance.refusals.empty()) return refused(std::move(inheritance.refusals));
+  const auto& starts = inheritance.controls;
+
+  RatingCurve survey_alone = curve_of(input, starts);
+  survey_alone.surveyed_top_m = top_of(surveyed, starts);
+  const double top_m = highest_level(input, survey_alone.surveyed_top_m);
+  const Knowledge knowledge = knowledge_of(input, survey_alone, starts);
+  set_to_prior(survey_alone, knowledge.prior, top_m);
+  survey_alone.remarks = inheritance.remarks;
+  survey_alone.remarks.insert(survey_alone.remarks.end(), knowledge.remarks.begin(), knowledge.remarks.end());
+
+  OfferedGaugings offered = offer(input, survey_alone, knowledge.prior);
+  if (!offered.refusals.empty()) return refused(std::move(offered.refusals));
+  if (const auto why = poorly_known(input, starts, survey_alone, offered.used)) return refused({*why});
+  const rating::GaugingFit fit = rating::fit_gaugings(survey_alone, knowledge.prior, offered.used, top_m);
+  const bool usable = fit.status == rating::FitStatus::converged || fit.status == rating::FitStatus::at_kink;
+  if (!usable) {
+    std::vector<std::string> words{fit_failure(fit.status)};
+    words.insert(words.end(), offered.remarks.begin(), offered.remarks.end());
+    return refused(std::move(words));
+  }
+  Result result;
+  result.curve = fit.curve;
+  result.curve.remarks.insert(result.curve.remarks.end(), offered.remarks.begin(), offered.remarks.end());
+  complete(input, surveyed, knowledge, offered, fit, top_m, result.curve);
+  result.before = before_of(input, starts);
+  result.status = Status::ok;
+  return result;
+}
+
+}  // namespace scourbook::rederivation

@@ -1,0 +1,261 @@
+#include "rederivation/diagnostics.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+#include <map>
+
+#include "hydraulics/area_law.hpp"
+#include "hydraulics/power.hpp"
+#include "hydraulics/uniform_flow.hpp"
+#include "rating/evaluate.hpp"
+#include "rederivation/residual_tests.hpp"
+
+namespace scourbook::rederivation {
+namespace {
+
+using rating::Observation;
+
+const char* const kOwn = "own rule";
+const char* const kIso = "ISO 1100-2:2010 (from memory)";
+constexpr int kLeastSigns = 6, kLeastRuns = 10, kLeastT = 3;
+constexpr double kTwoSided = 1.959963984540;
+
+struct Deviation {
+  double level_m, ln, sd;
+};
+
+/// Deviations of the used discharges, by level.
+std::vector<Deviation> deviations_by_level(const RatingCurve& curve) {
+  std::vector<Deviation> all;
+  for (const CurveGauging& g : curve.gaugings) {
+    if (g.use != GaugingUse::left_out && g.residual) all.push_back({g.level_m, *g.residual, g.sd_ln_q});
+  }
+  std::stable_sort(all.begin(), all.end(),
+                   [](const auto& a, const auto& b) { return a.level_m < b.level_m; });
+  return all;
+}
+
+const ControlCoefficients* parent_control(const Input& input, const std::string& name) {
+  if (!input.parent) return nullptr;
+  for (const ControlCoefficients& control : input.parent->curve.controls) {
+    if (control.name == name) return &control;
+  }
+  return nullptr;
+}
+
+/// area R^b of the part, or the critical flow with C_d = 1: flow at velocity scale 1.
+double section_flow(const hydraulics::SectionPart& part, FlowLaw law, double level_m) {
+  if (law == FlowLaw::critical) return hydraulics::crest_flow(part, level_m, 1);
+  const auto elements = part.at(level_m);
+  if (!(elements.area_m2 > 0)) return 0;
+  return elements.area_m2 * std::pow(elements.hydraulic_radius_m(), hydraulics::velocity_exponent(law));
+}
+
+void tests_of_signs(const std::vector<Deviation>& deviations, std::vector<Diagnostic>& out) {
+  const auto n = static_cast<int>(deviations.size());
+  const std::string rule = "two-sided binomial probability of the split of signs, at 5 %";
+  if (n < kLeastSigns) {
+    out.push_back({"signs_p",
+                   {},
+                   0.05,
+                   "not possible",
+                   fmt::format("test of signs: needs {} gaugings, there are {}", kLeastSigns, n),
+                   rule,
+                   kIso});
+    return;
+  }
+  const auto positive = static_cast<int>(
+      std::count_if(deviations.begin(), deviations.end(), [](const Deviation& d) { return d.ln > 0; }));
+  const double p = sign_test_p(positive, n);
+  out.push_back({"signs_p", p, 0.05, p >= 0.05 ? "passed" : "failed",
+                 fmt::format("signs: {} of {} gaugings lie above the curve (p {:.2f})", positive, n, p), rule,
+                 kIso});
+}
+
+void test_of_runs(const std::vector<Deviation>& deviations, std::vector<Diagnostic>& out) {
+  const auto n = static_cast<int>(deviations.size());
+  const std::string rule =
+      "runs of equal sign in the order of level, normal approximation without continuity correction, at 5 %";
+  std::vector<double> values;
+  for (const Deviation& d : deviations) values.push_back(d.ln);
+  const auto positive =
+      static_cast<int>(std::count_if(values.begin(), values.end(), [](double v) { return v > 0; }));
+  const auto negative =
+      static_cast<int>(std::count_if(values.begin(), values.end(), [](double v) { return v < 0; }));
+  const int runs = count_runs(values);
+  const auto z = n >= kLeastRuns ? runs_z(runs, positive, negative) : std::nullopt;
+  if (!z) {
+    out.push_back({"runs_z",
+                   {},
+                   kTwoSided,
+                   "not possible",
+                   fmt::format("test of runs: needs {} gaugings on both sides of the curve, there are {}",
+                               kLeastRuns, n),
+                   rule,
+                   kIso});
+    return;
+  }
+  out.push_back(
+      {"runs_z", *z, kTwoSided, std::abs(*z) <= kTwoSided ? "passed" : "failed",
+       fmt::format("runs: {} changes between above and below in the order of level (z {:.2f})", runs - 1, *z),
+       rule, kIso});
+}
+
+void test_of_mean(const std::vector<Deviation>& deviations, std::vector<Diagnostic>& out) {
+  const auto n = static_cast<int>(deviations.size());
+  const std::string rule = "Student's t of the mean deviation in sds, two-sided, at 5 %";
+  std::vector<double> values;
+  for (const Deviation& d : deviations) values.push_back(d.ln / d.sd);
+  const auto t = n >= kLeastT ? student_t(values) : std::nullopt;
+  if (!t) {
+    out.push_back({"student_t",
+                   {},
+                   {},
+                   "not possible",
+                   fmt::format("Student's t: needs {} gaugings, there are {}", kLeastT, n),
+                   rule,
+                   kIso});
+    return;
+  }
+  const double limit = student_quantile(0.975, n - 1);
+  out.push_back({"student_t", *t, limit, std::abs(*t) <= limit ? "passed" : "failed",
+                 fmt::format("mean deviation: Student's t {:.2f} against {:.2f}", *t, limit), rule, kIso});
+}
+
+double median(std::vector<double> values) {
+  std::sort(values.begin(), values.end());
+  const std::size_t half = values.size() / 2;
+  return values.size() % 2 == 1 ? values[half] : (values[half - 1] + values[half]) / 2;
+}
+
+}  // namespace
+
+void tell_moves(const Derivation& d, std::vector<Diagnostic>& out) {
+  for (const ControlCoefficients& now : d.curve.controls) {
+    const ControlCoefficients* before = parent_control(d.input, now.name);
+    if (before == nullptr) continue;
+    out.push_back(
+        {"move_h0_m " + now.name,
+         now.h0_m - before->h0_m,
+         {},
+         "note",
+         fmt::format(
+             "{}: offset {:+.3f} m, exponent {:+.3f}, area coefficient {:+.1f} %, section coefficient "
+             "{:+.1f} % against curve {}",
+             now.name, now.h0_m - before->h0_m, now.exponent - before->exponent,
+             100 * (now.area_coefficient / before->area_coefficient - 1),
+             100 * (now.section_coefficient / before->section_coefficient - 1), d.input.parent->curve.number),
+         "differences from the parent's",
+         kOwn});
+  }
+}
+
+void tell_gap_to_section(const Derivation& d, std::vector<Diagnostic>& out) {
+  for (std::size_t k = 0; k < d.curve.controls.size(); ++k) {
+    const ControlCoefficients& c = d.curve.controls[k];
+    if (!d.surveyed[k].found) continue;
+    double gap = 0, at = 0;
+    for (const double level : hydraulics::law_levels({c.range_from_m, c.range_to_m})) {
+      const double own = section_flow(d.surveyed[k].part, c.law, level);
+      const double law =
+          c.section_coefficient * std::pow(level - c.surveyed_h0_m, c.velocity_exponent + c.surveyed_c);
+      if (!(own > 0) || std::abs(std::log(law / own)) <= gap) continue;
+      gap = std::abs(std::log(law / own));
+      at = level;
+    }
+    out.push_back(
+        {"gap_to_section_ln " + c.name,
+         gap,
+         {},
+         "note",
+         fmt::format("{}: the power law is {:.1f} % off the section's own {} at most, at {:.2f} m", c.name,
+                     100 * std::expm1(gap), c.law == FlowLaw::critical ? "critical flow" : "conveyance", at),
+         "largest difference over the levels of the law, as surveyed",
+         "divided-channel method; Chow 1959 (from memory)"});
+  }
+}
+
+void test_residuals(const Derivation& d, std::vector<Diagnostic>& out) {
+  const auto deviations = deviations_by_level(d.curve);
+  tests_of_signs(deviations, out);
+  test_of_runs(deviations, out);
+  test_of_mean(deviations, out);
+}
+
+void tell_gaugings(const Derivation& d, std::vector<Diagnostic>& out) {
+  const auto deviations = deviations_by_level(d.curve);
+  const auto used = static_cast<double>(d.used.size());
+  if (deviations.empty()) {
+    out.push_back({"gaugings_used",
+                   used,
+                   {},
+                   "note",
+                   fmt::format("{} gaugings used, none with a flow; surveyed to {:.2f} m", d.used.size(),
+                               d.curve.surveyed_top_m),
+                   "number and range",
+                   kOwn});
+    return;
+  }
+  out.push_back(
+      {"gaugings_used",
+       used,
+       {},
+       "note",
+       fmt::format(
+           "{} gaugings used; with a flow: {:.2f} to {:.2f} m, {:.3g} to {:.3g} m3/s; surveyed to {:.2f} m",
+           d.used.size(), deviations.front().level_m, deviations.back().level_m, *d.curve.gauged_low_m3s,
+           *d.curve.gauged_high_m3s, d.curve.surveyed_top_m),
+       "number and range",
+       kOwn});
+}
+
+void tell_measured_geometry(const Derivation& d, std::vector<Diagnostic>& out) {
+  const ControlCoefficients* channel = nullptr;
+  const hydraulics::SectionPart* part = nullptr;
+  for (std::size_t k = 0; k < d.curve.controls.size(); ++k) {
+    if (d.curve.controls[k].kind != ControlKind::channel || !d.surveyed[k].found) continue;
+    channel = &d.curve.controls[k];
+    part = &d.surveyed[k].part;
+  }
+  if (channel == nullptr) return;
+  std::vector<double> areas, widths;
+  for (const GaugingAtLevel& offered : d.input.gaugings) {
+    // Above the bank the gauging holds more than the part.
+    const double level = offered.level_m - d.curve.survey_level_error_m;
+    if (level > part->lower_end_m()) continue;
+    const auto elements = part->at(level);
+    if (!(elements.area_m2 > 0)) continue;
+    if (offered.gauging.area_m2) areas.push_back(*offered.gauging.area_m2 / elements.area_m2);
+    if (offered.gauging.width_m) widths.push_back(*offered.gauging.width_m / elements.top_width_m);
+  }
+  const auto tell = [&](const char* name, const char* what, const std::vector<double>& ratios) {
+    if (ratios.empty()) return;
+    const double middle = median(ratios);
+    const bool near = middle > 0.8 && middle < 1.25;
+    out.push_back(
+        {name, middle, 1.25, near ? "passed" : "failed",
+         fmt::format("measured {} of {} gaugings: {:.2f} times the section's at the same level (median){}",
+                     what, ratios.size(), middle,
+                     near ? "" : "; is another section meant, or are survey or datum wrong?"),
+         "median ratio between 1/1.25 and 1.25", kOwn});
+  };
+  tell("measured_area_ratio", "area", areas);
+  tell("measured_width_ratio", "width", widths);
+}
+
+std::vector<Diagnostic> diagnose(const Derivation& derivation) {
+  std::vector<Diagnostic> out;
+  test_held_scale(derivation, out);
+  tell_refined_scale(derivation, out);
+  test_residuals(derivation, out);
+  tell_moves(derivation, out);
+  tell_gap_to_section(derivation, out);
+  tell_other_policy(derivation, out);
+  tell_measured_geometry(derivation, out);
+  tell_gaugings(derivation, out);
+  return out;
+}
+
+}  // namespace scourbook::rederivation
