@@ -1,193 +1,128 @@
-// How near re-derived curves come to the truth of two small ensembles of synthetic stations (data/README.md).
+// After a change of the channel: how near to the truth is the curve from the new survey alone, and with three
+// gaugings?
+//
+// Figures to compare with are a prototype's of the same rules on the same stations (README.md). On sixteen
+// stations a median or a 90th percentile hangs on two of them, hence the margins below.
 
-#include <catch2/catch.hpp>
+#include "ensemble.hpp"
 
-#include <algorithm>
 #include <cmath>
 #include <cstdio>
-#include <filesystem>
-#include <fstream>
 #include <map>
-#include <sstream>
 
-#include "fieldfile/take.hpp"
-#include "history/derivation_input.hpp"
 #include "rating/evaluate.hpp"
-#include "rederivation/derive.hpp"
-#include "store/book.hpp"
-
-using namespace scourbook;
 
 namespace {
 
-namespace fs = std::filesystem;
+using namespace ensemble;
 
-struct TruePoint {
-  std::string band;
-  double stage_m, discharge_m3s;
-};
-using Truth = std::map<std::string, std::vector<TruePoint>>;
-
-Truth read_truth(const fs::path& file) {
-  std::ifstream in(file);
-  REQUIRE(in);
-  Truth truth;
-  std::string line;
-  std::getline(in, line);
-  while (std::getline(in, line)) {
-    std::istringstream cells(line);
-    std::string station, band, stage, flow;
-    std::getline(cells, station, ',');
-    std::getline(cells, band, ',');
-    std::getline(cells, stage, ',');
-    std::getline(cells, flow, ',');
-    truth[station].push_back({band, std::stod(stage), std::stod(flow)});
-  }
-  return truth;
-}
-
-/// A book in a folder of its own, with an ensemble taken in.
-class Ensemble {
- public:
-  explicit Ensemble(const std::string& name)
-      : folder_(fs::temp_directory_path() / ("accuracy-" + name)),
-        data_(fs::path(SCOURBOOK_TESTS_DIR) / "accuracy" / "data" / name),
-        truth_(read_truth(data_ / "truth.csv")) {
-    fs::remove_all(folder_);
-    fs::create_directories(folder_);
-    book_.emplace(store::Book::create((folder_ / "ensemble.scourbook").string(), {"test", "", "", "new"}));
-    std::vector<std::string> files;
-    for (const char* file : {"station.csv", "zero.csv", "reach.csv", "survey.csv.gz", "gauging.csv.gz"}) {
-      files.push_back((data_ / file).string());
-    }
-    fieldfile::TakeOptions options;
-    options.who = "test";
-    const auto taken = fieldfile::take(*book_, files, options);
-    INFO(describe(taken.findings));
-    REQUIRE(taken.findings.empty());
-  }
-  ~Ensemble() {
-    book_.reset();
-    fs::remove_all(folder_);
-  }
-  store::Book& book() { return *book_; }
-  const Truth& truth() const { return truth_; }
-
- private:
-  fs::path folder_, data_;
-  Truth truth_;
-  std::optional<store::Book> book_;
-};
-
-Instant utc(const char* text) {
-  return parse_time(text, UtcOffset{}).time;
-}
-
-RatingCurve store_curve(store::Book& book, RatingCurve curve) {
-  auto writer = book.begin({"test", curve.station, "", "derive"});
-  curve = writer.add_curve(curve);
-  writer.commit();
-  return curve;
-}
-
-rederivation::Result derive(const store::Book& book, const history::DerivationRequest& request) {
-  const auto collected = history::collect(book, request);
-  INFO(request.station);
-  for (const auto& refusal : collected.refusals) UNSCOPED_INFO(refusal);
-  REQUIRE(collected.refusals.empty());
-  auto result = rederivation::derive(collected.input);
-  for (const auto& refusal : result.refusals) UNSCOPED_INFO(refusal);
-  REQUIRE(result.status == rederivation::Status::ok);
-  return result;
-}
-
-/// rms of ln(Q / truth) of one station by band; sd-normalised share inside the 95 % band.
-using ByBand = std::map<std::string, double>;
-
+/// rms of ln Q by band, one a station, and how often the 95 % band held the truth.
 struct Scores {
-  std::map<std::string, std::vector<double>> rms;  ///< by band, one a station
-  int inside = 0, all = 0;
+  std::map<std::string, std::vector<double>> rms;
+  int inside = 0, points = 0, refused = 0, left_out = 0;
 };
 
-void score(const RatingCurve& curve, const std::vector<TruePoint>& truth, Scores& scores) {
-  constexpr double kGaugeZero = 100;  // m, of every station
+void score(const EnsembleStation& station, const RatingCurve& curve, Scores& scores) {
   std::map<std::string, std::pair<double, int>> sums;
-  for (const TruePoint& point : truth) {
-    const double level = point.stage_m + kGaugeZero;
-    const double flow = rating::evaluate(curve, level).discharge_m3s;
-    // A flow of nothing where there is one is as bad as it gets; bounded so that it can be averaged.
-    const double error = flow > 0 ? std::max(-3.0, std::log(flow / point.discharge_m3s)) : -3.0;
-    sums[point.band].first += error * error;
-    ++sums[point.band].second;
-    ++scores.all;
-    scores.inside += std::abs(error) <= 1.96 * rating::sd_ln_q(curve, level);
+  for (const TruePoint& point : station.truth) {
+    const double flow = rating::evaluate(curve, point.level_m).discharge_m3s;
+    // No flow where there is some counts as a factor of ten off.
+    const double gap = flow > 0 ? std::log(flow / point.discharge_m3s) : std::log(0.1);
+    auto& [sum, count] = sums[point.band];
+    sum += gap * gap;
+    ++count;
+    ++scores.points;
+    scores.inside += std::abs(gap) <= 1.96 * rating::sd_ln_q(curve, point.level_m);
   }
   for (const auto& [band, sum] : sums) scores.rms[band].push_back(std::sqrt(sum.first / sum.second));
-}
-
-double quantile(std::vector<double> values, double p) {
-  std::sort(values.begin(), values.end());
-  const double at = p * static_cast<double>(values.size() - 1);
-  const auto low = static_cast<std::size_t>(at);
-  const std::size_t high = std::min(low + 1, values.size() - 1);
-  return values[low] + (at - static_cast<double>(low)) * (values[high] - values[low]);
-}
-
-Scores run(Ensemble& ensemble, bool with_gaugings) {
-  Scores scores;
-  for (const auto& [station, truth] : ensemble.truth()) {
-    history::DerivationRequest first;
-    first.station = station;
-    first.survey = station + "-S1";
-    first.from = utc("2015-01-01T00:00");
-    first.until = utc("2019-01-01T00:00");
-    first.first = true;
-    const RatingCurve parent = store_curve(ensemble.book(), derive(ensemble.book(), first).curve);
-    history::DerivationRequest next;
-    next.station = station;
-    next.survey = station + "-S2";
-    next.from = utc("2019-01-01T00:00");
-    next.descends_from = parent.number;
-    next.options.without_gaugings = !with_gaugings;
-    score(derive(ensemble.book(), next).curve, truth, scores);
+  for (const CurveGauging& gauging : curve.gaugings) {
+    scores.left_out += gauging.use == GaugingUse::left_out && gauging.reason != "derived without gaugings";
   }
-  return scores;
 }
 
-struct Aim {
-  const char* band;
-  double median;
+struct Measured {
+  Scores alone, gauged;
 };
 
-void hold(const std::string& name, bool with_gaugings, const std::vector<Aim>& aims) {
-  Ensemble ensemble(name);
-  const Scores scores = run(ensemble, with_gaugings);
-  std::printf("%s, %s: ", name.c_str(), with_gaugings ? "3 gaugings" : "survey alone");
-  for (const auto& [band, rms] : scores.rms) {
-    std::printf(" %s %.3f / %.3f", band.c_str(), quantile(rms, 0.5), quantile(rms, 0.9));
+Measured measure(const std::string& folder) {
+  Measured measured;
+  for (const EnsembleStation& station :
+       read_ensemble(std::string(SCOURBOOK_TESTS_DIR "/accuracy/data/") + folder)) {
+    CAPTURE(station.id);
+    const auto parent = rederivation::derive(input_of(station, 0));
+    REQUIRE(parent.status == rederivation::Status::ok);
+    auto input = input_of(station, 1, &parent.curve);
+    for (const bool gauged : {false, true}) {
+      input.options.without_gaugings = !gauged;
+      Scores& scores = gauged ? measured.gauged : measured.alone;
+      auto result = rederivation::derive(input);
+      if (result.status != rederivation::Status::ok) {
+        WARN(station.id << ": " << result.refusals.front());
+        ++scores.refused;
+        continue;
+      }
+      score(station, result.curve, scores);
+    }
   }
-  std::printf("  inside 95 %% bands: %.1f %%\n", 100.0 * scores.inside / scores.all);
-  for (const Aim& aim : aims) {
-    INFO(name << " " << aim.band);
-    REQUIRE(scores.rms.count(aim.band) == 1);
-    CHECK(quantile(scores.rms.at(aim.band), 0.5) <= aim.median);
+  return measured;
+}
+
+void print(const std::string& what, const Scores& scores) {
+  std::string line = what;
+  for (const char* band : {"low", "in-bank", "over-bank"}) {
+    const auto& rms = scores.rms.at(band);
+    char cell[64];
+    std::snprintf(cell, sizeof cell, "   %s %.3f / %.3f", band, quantile(rms, 0.5), quantile(rms, 0.9));
+    line += cell;
   }
-  CHECK(scores.inside >= 0.93 * scores.all);
+  std::printf("%s   inside the 95 %% band %.1f %%, left out %d, refused %d\n", line.c_str(),
+              100.0 * scores.inside / scores.points, scores.left_out, scores.refused);
+}
+
+/// Median and 90th percentile of a band, each at most a prototype's figure. The margin is what rounding of
+/// the figure hides (0.0005, or 0.005 where it has two digits) and as much again for the freedom that the
+/// rules leave.
+void check(const Scores& scores, const std::string& band, double median, double high,
+           double high_margin = 0.001) {
+  CAPTURE(band);
+  CHECK(quantile(scores.rms.at(band), 0.5) <= median + 0.001);
+  CHECK(quantile(scores.rms.at(band), 0.9) <= high + high_margin);
+}
+
+/// 95 % bands that are too narrow mislead; ours are rather too wide.
+void check_bands(const Scores& scores) {
+  CHECK(scores.refused == 0);
+  CHECK(scores.left_out == 0);
+  CHECK(scores.inside >= 0.95 * scores.points);
+}
+
+TEST_CASE("surveys and stages exact") {
+  const Measured measured = measure("level-exact");
+  std::printf("rms of ln Q, median / 90th percentile\n");
+  print("level-exact, survey alone", measured.alone);
+  check(measured.alone, "low", 0.030, 0.060);
+  check(measured.alone, "in-bank", 0.014, 0.027);
+  check(measured.alone, "over-bank", 0.026, 0.069);
+  check_bands(measured.alone);
+  print("level-exact, 3 gaugings  ", measured.gauged);
+  check(measured.gauged, "low", 0.031, 0.122);
+  check(measured.gauged, "in-bank", 0.018, 0.025, 0.002);
+  check(measured.gauged, "over-bank", 0.025, 0.069);
+  check_bands(measured.gauged);
+}
+
+TEST_CASE("surveys off by 5 cm, stages by 5 mm") {
+  const Measured measured = measure("level-5cm");
+  print("level-5cm, survey alone  ", measured.alone);
+  check(measured.alone, "low", 0.214, 1.40, 0.01);
+  check(measured.alone, "in-bank", 0.055, 0.131);
+  check(measured.alone, "over-bank", 0.059, 0.107);
+  check_bands(measured.alone);
+  print("level-5cm, 3 gaugings    ", measured.gauged);
+  check(measured.gauged, "low", 0.060, 0.106);
+  check(measured.gauged, "in-bank", 0.019, 0.043);
+  check(measured.gauged, "over-bank", 0.045, 0.063);
+  check_bands(measured.gauged);
 }
 
 }  // namespace
-
-// The aims are the medians of a first prototype of these rules on the same stations, with a tenth of margin:
-// sixteen stations are few.
-TEST_CASE("exact surveys: curves re-derived from the survey alone") {
-  hold("level-exact", false, {{"low", 1.1 * 0.030}, {"in-bank", 1.1 * 0.014}, {"over-bank", 1.1 * 0.026}});
-}
-TEST_CASE("exact surveys: curves re-derived with three gaugings") {
-  hold("level-exact", true, {{"low", 1.1 * 0.031}, {"in-bank", 1.1 * 0.018}, {"over-bank", 1.1 * 0.025}});
-}
-TEST_CASE("surveys off by 5 cm: curves re-derived from the survey alone") {
-  hold("level-5cm", false, {{"low", 1.1 * 0.214}, {"in-bank", 1.1 * 0.055}, {"over-bank", 1.1 * 0.059}});
-}
-TEST_CASE("surveys off by 5 cm: curves re-derived with three gaugings") {
-  hold("level-5cm", true, {{"low", 1.1 * 0.060}, {"in-bank", 1.1 * 0.019}, {"over-bank", 1.1 * 0.045}});
-}
