@@ -71,10 +71,10 @@ inline std::vector<EnsembleStation> read_ensemble(const std::string& folder) {
   for (const auto& row : read(folder + "/reach.csv", known).reaches) {
     stations.at(row.record.station).reach.push_back({row.record, {}});
   }
-  for (const auto& row : read(folder + "/survey.csv", known).surveys) {
+  for (const auto& row : read(folder + "/survey.csv.gz", known).surveys) {
     stations.at(row.record.station).surveys.push_back(row.record);
   }
-  for (const auto& row : read(folder + "/gauging.csv", known).gaugings) {
+  for (const auto& row : read(folder + "/gauging.csv.gz", known).gaugings) {
     const Gauging& gauging = row.record;
     const double level_m = gauging.mean_stage().metres() + zero_m.at(gauging.station);
     stations.at(gauging.station).gaugings.push_back({gauging, 1, level_m});
