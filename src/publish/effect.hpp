@@ -10,7 +10,7 @@
 
 namespace scourbook::publish {
 
-/// Day means of one stretch of the new edition (whole station days that begin in it) against what stood
+/// Day means of one stretch of the new edition (station days that it touches) against what stood
 /// before: the published day means where there are any, else those of the newest edition.
 struct StretchEffect {
   Instant from{};

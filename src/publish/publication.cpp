@@ -1,0 +1,130 @@
+#include "publish/publication.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+
+#include "publish/rounding.hpp"
+#include "replay/replay.hpp"
+
+namespace scourbook::publish {
+namespace {
+
+/// What was only unchecked because it was not published.
+Quality published_quality(Quality quality) {
+  return quality == Quality::unchecked ? Quality::good : quality;
+}
+
+store::PublishedMonth month_of(const replay::FlowBlock& block, Instant from, Instant until,
+                               const store::Settings& settings) {
+  store::PublishedMonth month;
+  month.month = block.month;
+  for (std::size_t i = 0; i < block.time_ms.size(); ++i) {
+    if (block.time_ms[i] < to_ms(from) || block.time_ms[i] >= to_ms(until)) continue;
+    const bool has_flow = !std::isnan(block.discharge_m3s[i]);
+    month.time_ms.push_back(block.time_ms[i]);
+    month.value.push_back(has_flow ? std::optional(as_published(block.discharge_m3s[i], settings))
+                                   : std::nullopt);
+    month.u95_tenth_pct.push_back(has_flow ? u95_tenth_pct(block.sd_ln_q[i]) : 0);
+    month.flags.push_back(block.flags[i]);
+    month.quality.push_back(published_quality(block.quality[i]));
+    month.curve.push_back(block.curve[i]);
+  }
+  return month;
+}
+
+store::PublishedDay day_of_mean(const replay::DayMean& mean, const store::Settings& settings) {
+  store::PublishedDay day;
+  day.day = mean.day.number;
+  if (mean.mean_m3s) {
+    day.mean = as_published(*mean.mean_m3s, settings);
+    day.u95_tenth_pct = u95_tenth_pct(mean.sd_ln_q);
+  }
+  day.flags = mean.flags;
+  day.quality = published_quality(mean.quality);
+  day.share = mean.share;
+  day.curves = mean.curves;
+  return day;
+}
+
+void require_digest(const store::ReplayRecord& replay, const replay::FlowBlock& block) {
+  const auto same = [&](const store::ReplayMonth& month) { return month.month == block.month; };
+  const auto kept = std::find_if(replay.months.begin(), replay.months.end(), same);
+  if (kept != replay.months.end() && kept->sha256 == digest(block)) return;
+  throw store::StoreError(
+      store::StoreError::Kind::damaged,
+      fmt::format("replay {} of {}: computing {} again does not give the flows that were kept", replay.number,
+                  replay.station, format_month(block.month)));
+}
+
+/// The first station day that begins at or after `time`.
+StationDay whole_day_from(Instant time, const StationClock& clock) {
+  const StationDay day = day_of(time, clock);
+  return start_of(day, clock) == time ? day : StationDay{day.number + 1};
+}
+
+}  // namespace
+
+store::Publication make_publication(const store::Book& book, const store::ReplayRecord& replay,
+                                    const std::function<void(std::int64_t, std::int64_t)>& progress) {
+  const history::View view = history::view_of(book, replay.station, {}, replay.edition, replay.data_version);
+  const StationClock clock = book.station(replay.station)->value.clock;
+  const store::Settings settings = book.settings();
+  const StationDay first = whole_day_from(replay.from, clock), end = day_of(replay.until, clock);
+  if (end <= first) {
+    throw store::StoreError(
+        store::StoreError::Kind::refused,
+        fmt::format("replay {} of {} holds no whole station day", replay.number, replay.station));
+  }
+  store::Publication publication;
+  publication.station = replay.station;
+  publication.replay = replay.number;
+  publication.from = start_of(first, clock);
+  publication.until = start_of(end, clock);
+  publication.decimals = static_cast<int>(settings.published_decimals);
+
+  const replay::Replayer replayer(book, view);
+  const auto all = static_cast<std::int64_t>(replay.months.size());
+  std::int64_t done = 0;
+  const Instant begin = start_of(utc_month_of(replay.from));
+  const Instant last = start_of(UtcMonth{utc_month_of(replay.until - Millis(1)).number + 1});
+  replayer.run(begin, last, [&](const replay::FlowBlock& block) {
+    require_digest(replay, block);
+    auto month = month_of(block, publication.from, publication.until, settings);
+    if (!month.time_ms.empty()) publication.months.push_back(std::move(month));
+    if (progress) progress(++done, 2 * all);
+  });
+  replayer.day_means(first, end, [&](const replay::DayMean& mean) {
+    publication.days.push_back(day_of_mean(mean, settings));
+    if (progress)
+      progress(all + all * (mean.day.number - first.number) / (end.number - first.number), 2 * all);
+  });
+  return publication;
+}
+
+std::optional<int> publication_at(const store::Book& book, const std::string& station, Instant time,
+                                  Known known) {
+  std::optional<int> newest;
+  for (const auto& publication : book.publications(station, known)) {
+    if (publication.from <= time && time < publication.until) newest = publication.number;
+  }
+  return newest;
+}
+
+PublicationState state_of(const store::Publication& publication, const std::vector<store::Publication>& all) {
+  // What newer ones leave uncovered: begin with its whole span and cut.
+  std::vector<std::pair<Instant, Instant>> left{{publication.from, publication.until}};
+  for (const auto& newer : all) {
+    if (newer.number <= publication.number) continue;
+    std::vector<std::pair<Instant, Instant>> rest;
+    for (const auto& [from, until] : left) {
+      if (from < std::min(until, newer.from)) rest.emplace_back(from, std::min(until, newer.from));
+      if (std::max(from, newer.until) < until) rest.emplace_back(std::max(from, newer.until), until);
+    }
+    left = std::move(rest);
+  }
+  return left.empty() ? PublicationState::superseded : PublicationState::published;
+}
+
+}  // namespace scourbook::publish
