@@ -16,7 +16,7 @@ constexpr double kMissed = 0.10;
 constexpr double kSlotArea = 0.001;
 constexpr double kOffsetFrom = -0.05, kOffsetTo = 0.045;
 
-/// The wet levels of the fit: height above the range's foot as a share of its depth, and ln of the area. In
+/// The wet levels of the fit: height above the foot as a share of the range's depth, and ln of the area. In
 /// shares the arithmetic is the same whatever the unit of length.
 struct Sample {
   double share, ln_area;
@@ -27,7 +27,7 @@ std::vector<Sample> wet_samples(const SectionPart& part, LevelRange range) {
   const double depth = range.to_m - range.from_m;
   for (const double level : law_levels(range)) {
     const double area = part.at(level).area_m2;
-    if (area > 0) samples.push_back({(level - range.from_m) / depth, reproducible_log(area)});
+    if (area > 0) samples.push_back({(level - range.foot()) / depth, reproducible_log(area)});
   }
   return samples;
 }
@@ -102,6 +102,7 @@ void judge(AreaLaw& law, const SectionPart& part, LevelRange range) {
 }
 
 AreaLawFit fit(const SectionPart& part, LevelRange range, bool free_offset) {
+  assert(range.foot() <= range.from_m);
   AreaLawFit result;
   const double depth = range.to_m - range.from_m;
   if (!(depth > 0) || !std::isfinite(depth)) {
@@ -116,7 +117,7 @@ AreaLawFit fit(const SectionPart& part, LevelRange range, bool free_offset) {
   const double x = free_offset ? best_offset(samples) : 0;
   const Line line = fit_line(samples, x);
   result.status = LawStatus::ok;
-  result.law.h0_m = range.from_m + x * depth;
+  result.law.h0_m = range.foot() + x * depth;
   result.law.c = line.c;
   result.law.w = reproducible_exp(line.intercept - line.c * reproducible_log(depth));
   judge(result.law, part, range);

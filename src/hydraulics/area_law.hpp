@@ -1,6 +1,7 @@
 #pragma once
 // The power law of a section's area, and the section coefficient of each flow law.
 
+#include <optional>
 #include <vector>
 
 #include "hydraulics/section.hpp"
@@ -11,6 +12,10 @@ namespace scourbook::hydraulics {
 struct LevelRange {
   double from_m = 0;
   double to_m = 0;
+  /// Where the offset lies or is sought, at most from_m: the bed's lowest point, where the range begins above
+  /// it.
+  std::optional<double> foot_m = {};
+  [[nodiscard]] double foot() const { return foot_m.value_or(from_m); }
 };
 
 /// area = w (z - h0)^c over a range of levels.
@@ -36,9 +41,9 @@ struct AreaLawFit {
 /// The 80 levels of the fit: evenly spaced from 5 % of the range's depth to its top.
 [[nodiscard]] std::vector<double> law_levels(LevelRange range);
 
-/// Log-log least squares of area on depth over law_levels, equal weight, offset = range.from_m.
+/// Log-log least squares of area on depth over law_levels, equal weight, offset = range.foot().
 [[nodiscard]] AreaLawFit fit_area_law(const SectionPart& part, LevelRange range);
-/// The same with the offset fitted: h0 = range.from_m + x (to - from), x in [-0.05, 0.045] that minimises the
+/// The same with the offset fitted: h0 = range.foot() + x (to - from), x in [-0.05, 0.045] that minimises the
 /// squared log residual (a channel control). x is found as the root of the derivative, so that it does not
 /// hang on rounding: the same section in other units gives the same law.
 [[nodiscard]] AreaLawFit fit_area_law_free_offset(const SectionPart& part, LevelRange range);

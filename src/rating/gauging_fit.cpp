@@ -148,6 +148,16 @@ RatingCurve start_curve(const RatingCurve& curve, const FreePrior& p,
 
 }  // namespace
 
+Vector sds_given_held(const Prior& prior) {
+  const FreePrior p = given_held(prior);
+  Vector sds = Vector::Zero(prior.mean.size());
+  for (std::size_t j = 0; j < p.free.size(); ++j) {
+    const auto at = static_cast<Eigen::Index>(j);
+    sds(p.free[j]) = std::sqrt(p.covariance(at, at));
+  }
+  return sds;
+}
+
 RatingCurve feasible_start(const RatingCurve& curve, const Prior& prior,
                            const std::vector<Observation>& observations, double top_m) {
   return start_curve(curve, given_held(prior), observations, top_m);

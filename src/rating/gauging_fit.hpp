@@ -50,6 +50,9 @@ struct Prior {
   std::vector<bool> held;
 };
 
+/// sd of each unknown given the held ones; 0 for those.
+[[nodiscard]] Vector sds_given_held(const Prior& prior);
+
 struct GaugingFit {
   FitStatus status = FitStatus::not_run;
   RatingCurve curve;  ///< refreshed at the fitted unknowns; held coefficients untouched

@@ -14,15 +14,27 @@
 #include "rederivation/inherited_control.hpp"
 #include "rederivation/offered_gaugings.hpp"
 #include "rederivation/prior_knowledge.hpp"
+#include "rederivation/remarks.hpp"
 #include "rederivation/surveyed_control.hpp"
 
 namespace scourbook::rederivation {
 namespace {
 
 constexpr double kPoorlyKnown = 0.15;  // sd of ln Q of the parent's curve
-constexpr double kLargeTrim = 3;       // prior sds
+constexpr double kBandsAbove = 2;      // depths up to the top that the band table covers
 
 using rating::Observation;
+
+bool positive(const std::optional<double>& value) {
+  return value && *value > 0 && std::isfinite(*value);
+}
+
+/// Whether a row holds what its flow law needs.
+bool states_scale(const ReachRow& row) {
+  if (!positive(row.meander_factor) || (row.scale_sd_pct && !positive(row.scale_sd_pct))) return false;
+  if (row.law == FlowLaw::critical) return positive(row.coefficient);
+  return positive(row.slope) && positive(row.law == FlowLaw::manning ? row.roughness_n : row.chezy_c);
+}
 
 /// Faults of the input that no computation can mend.
 std::vector<std::string> faults_of(const Input& input) {
@@ -42,8 +54,12 @@ std::vector<std::string> faults_of(const Input& input) {
     sections += reach.row.control == ControlKind::section;
     channels += reach.row.control == ControlKind::channel;
     const std::string name = control_name(reach.row, overbank > 1);
+    if (!states_scale(reach.row)) {
+      faults.push_back(
+          fmt::format("{}: its reach row lacks what flow law {} needs", name, word(reach.row.law)));
+    }
     if (reach.row.control == ControlKind::overbank && !names.insert(name).second) {
-      faults.push_back(fmt::format("two overbank controls have the part {}; give their parts different names",
+      faults.push_back(fmt::format("two overbank controls have the part {}: give their parts different names",
                                    reach.row.part));
     }
   }
@@ -54,18 +70,22 @@ std::vector<std::string> faults_of(const Input& input) {
   return faults;
 }
 
+/// The highest level that the survey covers: of the lowest overbank part where there is one, else of the
+/// channel, and of a crest only where it stands alone, since its banks say nothing of the section at the
+/// gauge.
 double top_of(const std::vector<SurveyedControl>& surveyed, const std::vector<ControlStart>& starts) {
-  // A crest's banks say nothing of the section at the gauge, where there is one.
-  double top = -1e300;
-  for (const bool crests : {false, true}) {
+  for (const ControlKind kind : {ControlKind::overbank, ControlKind::channel, ControlKind::section}) {
+    std::optional<double> top;
     for (std::size_t i = 0; i < starts.size(); ++i) {
       const ControlCoefficients& c = starts[i].control;
-      if ((c.kind == ControlKind::section) != crests) continue;
-      top = std::max(top, surveyed[i].found ? surveyed[i].top_m : c.range_to_m);
+      if (c.kind != kind) continue;
+      const double own = surveyed[i].found ? surveyed[i].top_m : c.range_to_m;
+      top = top ? std::min(*top, own) : own;
     }
-    if (top > -1e300) return top;
+    if (top) return *top;
   }
-  return top;
+  assert(false);
+  return 0;
 }
 
 RatingCurve curve_of(const Input& input, const std::vector<ControlStart>& starts) {
@@ -98,17 +118,10 @@ void set_to_prior(RatingCurve& curve, const rating::Prior& prior, double top_m) 
   rating::refresh(curve, top_m);
 }
 
-const ControlCoefficients* control_named(const RatingCurve& curve, const std::string& name) {
-  for (const ControlCoefficients& control : curve.controls) {
-    if (control.name == name) return &control;
-  }
-  return nullptr;
-}
-
 /// Holding what is itself hardly known would carry its error on: refused, with the ways on.
+/// `curve` has flow at every gauging.
 std::optional<std::string> poorly_known(const Input& input, const std::vector<ControlStart>& starts,
-                                        const RatingCurve& survey_alone,
-                                        const std::vector<Observation>& used) {
+                                        const RatingCurve& curve, const std::vector<Observation>& used) {
   if (!input.parent || input.options.hold != HoldPolicy::velocity_scale) return {};
   const RatingCurve& parent = input.parent->curve;
   const rating::Matrix covariance = rating::covariance_matrix(parent);
@@ -116,9 +129,9 @@ std::optional<std::string> poorly_known(const Input& input, const std::vector<Co
   std::string at;
   for (const Observation& seen : used) {
     if (seen.role != Observation::Role::discharge) continue;
-    const rating::Flow flow = rating::evaluate(survey_alone, seen.level_m);
+    const rating::Flow flow = rating::evaluate(curve, seen.level_m);
     if (flow.control < 0 || starts[static_cast<std::size_t>(flow.control)].in_parent < 0) continue;
-    const ControlCoefficients& now = survey_alone.controls[static_cast<std::size_t>(flow.control)];
+    const ControlCoefficients& now = curve.controls[static_cast<std::size_t>(flow.control)];
     const ControlCoefficients& before =
         parent.controls[static_cast<std::size_t>(starts[static_cast<std::size_t>(flow.control)].in_parent)];
     const double sd = rating::sd_of_unknowns(parent, covariance, before.h0_m + (seen.level_m - now.h0_m));
@@ -150,73 +163,9 @@ std::string fit_failure(rating::FitStatus status) {
   }
 }
 
-void remark_trims(RatingCurve& curve, const rating::Prior& prior) {
-  const auto unknowns = rating::unknowns_of(curve);
-  for (std::size_t i = 0; i < unknowns.size(); ++i) {
-    const auto kind = unknowns[i].kind;
-    const bool trim = kind == rating::UnknownKind::level_error || kind == rating::UnknownKind::e_k ||
-                      kind == rating::UnknownKind::ec;
-    const auto at = static_cast<Eigen::Index>(i);
-    const double sd = std::sqrt(prior.covariance(at, at));
-    const double move = rating::value_of(curve, unknowns[i]) - prior.mean(at);
-    if (!trim || prior.held[i] || std::abs(move) <= kLargeTrim * sd) continue;
-    curve.remarks.push_back(
-        fmt::format("trim {} moved by {:+.3f}, {:.1f} of its prior sds: is the survey, the gauge zero or "
-                    "a gauging wrong, or did the scale change?",
-                    rating::name_of(curve, unknowns[i]), move, std::abs(move) / sd));
-  }
-  for (const ControlCoefficients& control : curve.controls) {
-    if (control.surveyed_c + control.allowance_c + control.trim_c < rating::kLeastAreaExponent) {
-      curve.remarks.push_back(fmt::format("{}: the area exponent was bounded below at {}", control.name,
-                                          rating::kLeastAreaExponent));
-    }
-  }
-}
-
-/// Which of section and channel governs at levels between the higher offset and the top.
-void remark_governing(RatingCurve& curve, double top_m) {
-  const double from = rating::cease_to_flow_m(curve);
-  constexpr int kSteps = 200;
-  std::set<int> governing;
-  for (int i = 1; i <= kSteps; ++i) {
-    governing.insert(rating::evaluate(curve, from + (top_m - from) * i / kSteps).control);
-  }
-  const bool both = control_named(curve, "section") != nullptr && control_named(curve, "channel") != nullptr;
-  for (std::size_t k = 0; k < curve.controls.size(); ++k) {
-    const ControlCoefficients& control = curve.controls[k];
-    if (control.kind == ControlKind::overbank) {
-      if (control.h0_m >= top_m) {
-        curve.remarks.push_back(
-            fmt::format("{} never adds: its offset {:.3f} m lies above the surveyed top {:.3f} m",
-                        control.name, control.h0_m, top_m));
-      }
-    } else if (both && governing.count(static_cast<int>(k)) == 0) {
-      curve.remarks.push_back(
-          fmt::format("{} never governs between {:.3f} and {:.3f} m", control.name, from, top_m));
-    }
-  }
-  if (both && !curve.takeover_level_m) {
-    curve.remarks.push_back(
-        "the channel nowhere takes over from the section: the smaller of both flows counts at every "
-        "level");
-  }
-}
-
-void remark_buried_crest(RatingCurve& curve) {
-  const ControlCoefficients* section = control_named(curve, "section");
-  const ControlCoefficients* channel = control_named(curve, "channel");
-  if (section == nullptr || channel == nullptr || section->survey_fate != Fate::carried) return;
-  if (channel->lowest_point_m <= section->lowest_point_m) return;
-  curve.remarks.insert(
-      curve.remarks.begin(),
-      fmt::format("THE NEW CHANNEL BED ({:.3f} m) LIES ABOVE THE CARRIED CREST ({:.3f} m): the crest is "
-                  "likely buried or gone; survey it before this curve is used",
-                  channel->lowest_point_m, section->lowest_point_m));
-}
-
 void set_gauged_range(const Input& input, RatingCurve& curve) {
   for (const CurveGauging& g : curve.gaugings) {
-    if (g.use == GaugingUse::left_out || !(g.discharge_m3s > 0)) continue;
+    if (g.use == GaugingUse::left_out || g.role != rating::word(Observation::Role::discharge)) continue;
     curve.gauged_low_m3s = std::min(curve.gauged_low_m3s.value_or(g.discharge_m3s), g.discharge_m3s);
     curve.gauged_high_m3s = std::max(curve.gauged_high_m3s.value_or(g.discharge_m3s), g.discharge_m3s);
   }
@@ -249,7 +198,8 @@ void complete(const Input& input, const std::vector<SurveyedControl>& surveyed, 
   curve.gaugings = offered.records;
   for (CurveGauging& record : curve.gaugings) judge(record, curve, offered.used);
   set_gauged_range(input, curve);
-  curve.bands = rating::band_table(curve, fit.covariance, top_m);
+  const double cease = rating::cease_to_flow_m(curve);
+  curve.bands = rating::band_table(curve, fit.covariance, cease + kBandsAbove * (top_m - cease));
   remark_trims(curve, knowledge.prior);
   for (const auto& gauging : fit.at_takeover) {
     curve.remarks.push_back(fmt::format("takeover at gauging {}: the fit ended on it", gauging));
@@ -282,6 +232,21 @@ Result refused(std::vector<std::string> refusals) {
   return result;
 }
 
+bool is_finite(const RatingCurve& curve) {
+  bool finite =
+      std::isfinite(curve.survey_level_error_m) && std::isfinite(curve.takeover_level_m.value_or(0));
+  for (const ControlCoefficients& c : curve.controls) {
+    for (const double value : {c.velocity_scale, c.allowance_h0_m, c.allowance_c, c.reference_depth_m,
+                               c.surveyed_h0_m, c.surveyed_c, c.area_coefficient, c.section_coefficient,
+                               c.law_misfit, c.trim_h0_m, c.trim_c, c.h0_m, c.exponent, c.flow_scale}) {
+      finite = finite && std::isfinite(value);
+    }
+  }
+  for (const double value : curve.covariance) finite = finite && std::isfinite(value);
+  for (const BandPoint& point : curve.bands) finite = finite && std::isfinite(point.sd_ln_q);
+  return finite;
+}
+
 double highest_level(const Input& input, double top_m) {
   for (const GaugingAtLevel& gauging : input.gaugings) top_m = std::max(top_m, gauging.level_m);
   return top_m;
@@ -289,9 +254,12 @@ double highest_level(const Input& input, double top_m) {
 
 }  // namespace
 
-Result derive(const Input& input) {
-  auto faults = faults_of(input);
+Result derive(const Input& given) {
+  auto faults = faults_of(given);
   if (!faults.empty()) return refused(std::move(faults));
+  Input input = given;
+  std::stable_sort(input.reach.begin(), input.reach.end(),
+                   [](const ReachInput& a, const ReachInput& b) { return a.row.control < b.row.control; });
   const auto surveyed = survey_controls(input);
   Inheritance inheritance = inherit(input, surveyed);
   if (!inheritance.refusals.empty()) return refused(std::move(inheritance.refusals));
@@ -307,7 +275,8 @@ Result derive(const Input& input) {
 
   OfferedGaugings offered = offer(input, survey_alone, knowledge.prior);
   if (!offered.refusals.empty()) return refused(std::move(offered.refusals));
-  if (const auto why = poorly_known(input, starts, survey_alone, offered.used)) return refused({*why});
+  const RatingCurve feasible = rating::feasible_start(survey_alone, knowledge.prior, offered.used, top_m);
+  if (const auto why = poorly_known(input, starts, feasible, offered.used)) return refused({*why});
   const rating::GaugingFit fit = rating::fit_gaugings(survey_alone, knowledge.prior, offered.used, top_m);
   const bool usable = fit.status == rating::FitStatus::converged || fit.status == rating::FitStatus::at_kink;
   if (!usable) {
@@ -319,6 +288,9 @@ Result derive(const Input& input) {
   result.curve = fit.curve;
   result.curve.remarks.insert(result.curve.remarks.end(), offered.remarks.begin(), offered.remarks.end());
   complete(input, surveyed, knowledge, offered, fit, top_m, result.curve);
+  if (!is_finite(result.curve)) {
+    return refused({"the numbers run out of range: look at the survey's elevations and at the gaugings"});
+  }
   result.before = before_of(input, starts);
   result.status = Status::ok;
   return result;

@@ -17,8 +17,9 @@ inline constexpr double kDc = 0.10, kDcCrest = 0.15;
 inline constexpr double kSurveyLevel = 0.03;  // m, e_s where the survey states none
 inline constexpr double kEk = 0.01;           // m
 inline constexpr double kEc = 0.02;
-inline constexpr double kCarried = 3;        // times e_k and ec of a carried control
-inline constexpr double kLeastMarks = 0.01;  // m, e_s from marks on fixed ground
+inline constexpr double kCarried = 3;         // times e_k and ec of a carried control
+inline constexpr double kLeastLevel = 0.001;  // m, e_s at least
+inline constexpr double kLeastMarks = 0.01;   // m, e_s from marks on fixed ground
 }  // namespace prior_sd
 
 /// One control of the new curve before it is fitted: surveyed coefficients, v1, b, dh, dc and delta as they

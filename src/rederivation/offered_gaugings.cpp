@@ -18,6 +18,8 @@ constexpr double kDischargeSd = 0.04;  // half of 8 %, where a gauging states no
 constexpr double kStageSd = 0.005;     // m
 constexpr double kLevelSd = 0.02;      // m, of a measured level of the lowest point
 constexpr double kFarOff = 3;          // sds
+constexpr double kScaleChange = 0.10;  // sd of a change of ln v1 between two periods
+constexpr double kLeastSd = 0.001;     // m
 
 /// The control whose lowest point a zero-flow level is measured at: section, else channel, else the lowest
 /// overbank.
@@ -49,10 +51,10 @@ Observation observation_of(const GaugingAtLevel& offered, const RatingCurve& cur
   seen.level_m = offered.level_m;
   seen.discharge_m3s = gauging.discharge.m3s();
   seen.sd_ln_q = gauging.uncertainty_pct ? *gauging.uncertainty_pct / 200 : kDischargeSd;
-  seen.sd_level_m = gauging.stage_uncertainty_m.value_or(kStageSd);
+  seen.sd_level_m = std::max(kLeastSd, gauging.stage_uncertainty_m.value_or(kStageSd));
   if (gauging.is_zero_flow_level()) {
     seen.role = Role::zero_flow_level;
-    seen.sd_level_m = gauging.stage_uncertainty_m.value_or(kLevelSd);
+    seen.sd_level_m = std::max(kLeastSd, gauging.stage_uncertainty_m.value_or(kLevelSd));
     seen.control = zero_level_control(curve);
   } else if (gauging.is_zero_flow()) {
     seen.role = Role::zero_flow;
@@ -64,7 +66,7 @@ double variance_along(const rating::Prior& prior, const rating::Vector& gradient
   return std::max(0.0, gradient.dot(prior.covariance * gradient));
 }
 
-/// Variance of a control's ln v1.
+/// Variance of a control's ln v1 beforehand.
 double scale_variance(const RatingCurve& curve, const rating::Prior& prior, int control) {
   const auto unknowns = rating::unknowns_of(curve);
   for (std::size_t i = 0; i < unknowns.size(); ++i) {
@@ -75,6 +77,7 @@ double scale_variance(const RatingCurve& curve, const rating::Prior& prior, int 
   return 0;
 }
 
+/// What level errors explain of a shift, and what the flow's own uncertainty moves its level by.
 double limit_of(const Observation& seen, const RatingCurve& curve, const rating::Prior& prior,
                 double at_level_m) {
   const rating::Flow flow = rating::evaluate(curve, at_level_m);
@@ -82,7 +85,11 @@ double limit_of(const Observation& seen, const RatingCurve& curve, const rating:
   const auto gradient = rating::offset_gradient(curve, control, rating::unknowns_of(curve));
   double variance = variance_along(prior, gradient) + seen.sd_level_m * seen.sd_level_m;
   const double slope = rating::log_slope(curve, at_level_m);
-  if (slope > 0) variance += scale_variance(curve, prior, control) / (slope * slope);
+  if (seen.role == Role::discharge && slope > 0) {
+    const double of_flow = scale_variance(curve, prior, control) + kScaleChange * kScaleChange +
+                           seen.sd_ln_q * seen.sd_ln_q + curve.model_error * curve.model_error;
+    variance += of_flow / (slope * slope);
+  }
   return kFarOff * std::sqrt(variance);
 }
 
@@ -153,7 +160,8 @@ void judge(CurveGauging& record, const RatingCurve& fitted, const std::vector<Ob
     record.residual = std::log(record.discharge_m3s / record.curve_m3s);
   }
   for (const Observation& seen : used) {
-    if (seen.gauging == record.gauging) record.sd_ln_q = rating::residual_sds(fitted, {seen})(0);
+    if (seen.gauging == record.gauging && seen.role == Role::discharge)
+      record.sd_ln_q = rating::residual_sds(fitted, {seen})(0);
   }
 }
 

@@ -17,8 +17,11 @@ struct OfferedGaugings {
 };
 
 /// A gauging is left out by name, or where its shift on `survey_alone` (the curve at the prior mean) exceeds
-///   3 sqrt(var of the governing control's offset + u_z^2 + (sd of its ln v1 / (dlnQ/dz))^2).
-/// The last term is what an uncertain velocity scale moves the level of a flow by.
+///   3 sqrt(var of the governing control's offset + u_z^2 + var(ln Q) / (dlnQ/dz)^2),
+///   var(ln Q) = var(ln v1) + 0.10^2 + u_i^2 + r^2.
+/// The last term is what the flow's uncertainty moves its level by: without it good gaugings of deep water
+/// would be far off, and so would those that show a change of the scale (0.10: a third more or less stays,
+/// for the score test to see).
 [[nodiscard]] OfferedGaugings offer(const Input& input, const RatingCurve& survey_alone,
                                     const rating::Prior& prior);
 

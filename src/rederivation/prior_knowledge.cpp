@@ -82,7 +82,8 @@ class Builder {
 
  private:
   void level_error(Eigen::Index at) {
-    noise_(at) = input_.survey.level_uncertainty_m.value_or(prior_sd::kSurveyLevel);
+    const double stated = input_.survey.level_uncertainty_m.value_or(prior_sd::kSurveyLevel);
+    noise_(at) = std::max(stated, prior_sd::kLeastLevel);
     if (!input_.parent || !input_.parent->survey) return;
     const RatingCurve& parent = input_.parent->curve;
     const Survey& before = *input_.parent->survey;
@@ -120,19 +121,20 @@ class Builder {
       return;
     }
     noise_(at) = own_sd(start, unknown.kind);
-    if (start.control.survey_fate == Fate::carried && unknown.kind == UnknownKind::e_k)
-      keep_level_error(at, start);
+    if (start.control.survey_fate == Fate::carried) keep_trim(at, start, unknown.kind);
   }
 
-  /// The section is as surveyed before: so is the error of its levels.
-  void keep_level_error(Eigen::Index at, const ControlStart& start) {
+  /// The section is as surveyed before: so are the errors of that survey, of its levels the common one too.
+  void keep_trim(Eigen::Index at, const ControlStart& start, UnknownKind kind) {
     const RatingCurve& parent = input_.parent->curve;
     const ControlCoefficients& before = parent.controls[static_cast<std::size_t>(start.in_parent)];
-    if (before.survey_fate == Fate::carried) {
-      link(at, {UnknownKind::e_k, start.in_parent}, before.trim_h0_m);
-    } else {
-      link(at, {UnknownKind::level_error, -1}, parent.survey_level_error_m);
+    if (kind == UnknownKind::ec) {
+      link(at, {UnknownKind::ec, start.in_parent}, before.trim_c);
+      return;
     }
+    link(at, {UnknownKind::e_k, start.in_parent}, before.trim_h0_m);
+    if (before.survey_fate == Fate::carried) return;
+    link(at, {UnknownKind::level_error, -1}, before.trim_h0_m + parent.survey_level_error_m);
   }
 
   void link(Eigen::Index at, Unknown parent_unknown, double mean) {

@@ -21,8 +21,9 @@ struct Knowledge {
 ///
 /// v1, dh and dc of a control that goes on are the parent's own, held unless the policy is `carried`. e_s is
 /// new knowledge, but where both surveys share marks on fixed ground it is the parent's e_s - D, and where
-/// the survey is the parent's own it goes on. A carried control keeps the level error of the survey that it
-/// comes from.
+/// the survey is the parent's own it goes on. A carried control keeps the errors of the survey that it
+/// comes from: e_k goes on from the parent's e_s + e_k, ec from the parent's, each with three times the usual
+/// sd.
 [[nodiscard]] Knowledge knowledge_of(const Input& input, const RatingCurve& curve,
                                      const std::vector<ControlStart>& starts);
 

@@ -78,18 +78,22 @@ double channel_top(const Input& input, const SectionPart& part) {
   return over ? std::max(bank, std::min(bank + kAboveBank, *over)) : bank;
 }
 
+/// Of section and channel the offset stays with the lowest point, wherever the range begins; water gets into
+/// an overbank part where its range begins.
 LevelRange range_of(const Input& input, const ReachRow& row, const SectionPart& part) {
-  LevelRange range{row.level_from_m.value_or(part.lowest_m()), 0};
+  const double lowest = part.lowest_m();
+  LevelRange range{std::max(row.level_from_m.value_or(lowest), lowest), 0, lowest};
   switch (row.control) {
     case ControlKind::section:
-      range.to_m = row.level_to_m.value_or(std::min(range.from_m + kSectionRange, part.lower_end_m()));
+      range.to_m = row.level_to_m.value_or(std::min(lowest + kSectionRange, part.lower_end_m()));
       break;
     case ControlKind::channel:
       range.to_m = row.level_to_m.value_or(channel_top(input, part));
       break;
     case ControlKind::overbank:
-      range.from_m = std::max(part.lowest_m(), spill_level(input, row).value_or(part.lowest_m()));
+      range.from_m = std::max(lowest, spill_level(input, row).value_or(lowest));
       range.to_m = row.level_to_m.value_or(part.highest_m());
+      range.foot_m = range.from_m;
       break;
   }
   return range;
