@@ -102,7 +102,7 @@ void judge(AreaLaw& law, const SectionPart& part, LevelRange range) {
 }
 
 AreaLawFit fit(const SectionPart& part, LevelRange range, bool free_offset) {
-  assert(range.foot() <= range.from_m);
+  assert(!(range.foot() > range.from_m));
   AreaLawFit result;
   const double depth = range.to_m - range.from_m;
   if (!(depth > 0) || !std::isfinite(depth)) {

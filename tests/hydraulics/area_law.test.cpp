@@ -302,3 +302,15 @@ TEST_CASE("levels below the bed take no part, and are told") {
   CHECK(f.law.missed_levels_m[dry - 1] <= 0);
   CHECK(std::isfinite(f.law.max_misfit));
 }
+
+TEST_CASE("a range that begins above the bed keeps the offset at the bed") {
+  const SectionPart box = section(trapezoid(4, 0, 5));
+  const AreaLaw fixed = fit_area_law(box, {1, 4, 0}).law;
+  CHECK(fixed.h0_m == 0);
+  CHECK(fixed.c == Approx(1).epsilon(1e-12));
+  CHECK(fixed.w == Approx(4).epsilon(1e-12));
+  const AreaLaw free = fit_area_law_free_offset(box, {1, 4, 0}).law;
+  CHECK(free.h0_m == Approx(0).margin(1e-6));
+  CHECK(free.c == Approx(1).epsilon(1e-6));
+  CHECK(fit_area_law(box, {1, 4}).law.h0_m == 1);
+}
