@@ -18,10 +18,10 @@ struct DeriveArguments : Arguments {
 };
 
 HoldPolicy hold_of(const std::string& text) {
-  for (const HoldPolicy policy : {HoldPolicy::velocity_scale, HoldPolicy::carried, HoldPolicy::flow_scale}) {
+  for (const HoldPolicy policy : {HoldPolicy::velocity_scale, HoldPolicy::carried}) {
     if (text == word(policy)) return policy;
   }
-  throw UsageError(fmt::format("--hold: \"{}\"; expected velocity-scale, carried or flow-scale", text));
+  throw UsageError(fmt::format("--hold: \"{}\"; expected velocity-scale or carried", text));
 }
 
 history::DerivationRequest request_of(const DeriveArguments& arguments, const Station& station) {
@@ -124,7 +124,9 @@ void add_derive(CLI::App& program, Chosen& chosen) {
   command.add_option("--leave-out", arguments->leave_out, "gaugings not to be used, by id")->delimiter(',');
   command.add_option("--carry", arguments->carry, "controls that may keep the survey of the curve before")
       ->delimiter(',');
-  command.add_option("--hold", arguments->hold, "what is held: velocity-scale (exactly)")
+  command
+      .add_option("--hold", arguments->hold,
+                  "velocity-scale: exactly; carried: the parent's posterior is the prior")
       ->capture_default_str();
   command.add_flag(
       "--rescale", arguments->rescale,

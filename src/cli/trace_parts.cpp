@@ -53,6 +53,14 @@ Json figure_json(const PublishedFigure& figure) {
           {"recomputed_as_published_m3s", shown(figure.recomputed)}};
 }
 
+std::string traced_flow_text(const publish::TracedCurve& traced) {
+  std::string text = fmt::format(
+      "  at level z = {:.8f} m: {:.6g} m3/s{}\n", traced.level_m, traced.discharge_m3s,
+      traced.weight < 1 ? fmt::format(", weight {:.4f} in the blend", traced.weight) : std::string());
+  for (const auto& control : traced.controls) text += control_line(control);
+  return text;
+}
+
 std::string traced_curve_text(const publish::TracedCurve& traced, bool with_flow) {
   const RatingCurve& curve = traced.curve;
   std::string text =
@@ -62,12 +70,7 @@ std::string traced_curve_text(const publish::TracedCurve& traced, bool with_flow
     text += fmt::format("  descends from curve {}; {} held\n", *curve.parent, word(curve.hold));
   text += wrapped(gaugings_used(curve));
   for (const auto& reason : traced.out_of_date) text += wrapped("out of date: " + reason);
-  if (!with_flow) return text;
-  text += fmt::format(
-      "  at level z = {:.8f} m: {:.6g} m3/s{}\n", traced.level_m, traced.discharge_m3s,
-      traced.weight < 1 ? fmt::format(", weight {:.4f} in the blend", traced.weight) : std::string());
-  for (const auto& control : traced.controls) text += control_line(control);
-  return text;
+  return with_flow ? text + traced_flow_text(traced) : text;
 }
 
 Json traced_curve_json(const publish::TracedCurve& traced, bool with_flow) {

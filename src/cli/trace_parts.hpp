@@ -26,6 +26,8 @@ template <class Traced>
 
 [[nodiscard]] std::string figure_text(const PublishedFigure& figure);
 [[nodiscard]] Json figure_json(const PublishedFigure& figure);
+/// The arithmetic alone: the flow of each control at the level.
+[[nodiscard]] std::string traced_flow_text(const publish::TracedCurve& traced);
 [[nodiscard]] std::string traced_curve_text(const publish::TracedCurve& traced, bool with_flow);
 [[nodiscard]] Json traced_curve_json(const publish::TracedCurve& traced, bool with_flow);
 [[nodiscard]] std::string acts_text(const std::vector<Act>& acts, UtcOffset offset);

@@ -79,7 +79,11 @@ std::string trace_text(const store::Book& book, const publish::TracedValue& trac
                         traced.period.curve.value_or(0),
                         traced.view.edition ? traced.view.edition->number : 0, traced.edition_act);
   }
-  for (const auto& curve : traced.curves) text += traced_curve_text(curve, true);
+  int last = 0;
+  for (const auto& curve : traced.curves) {
+    text += curve.curve.number == last ? traced_flow_text(curve) : traced_curve_text(curve, true);
+    last = curve.curve.number;
+  }
   return text + acts_text(traced.acts, offset);
 }
 
