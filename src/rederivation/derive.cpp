@@ -184,8 +184,8 @@ void set_gauged_range(const Input& input, RatingCurve& curve) {
 
 /// A fitted curve with everything that is stored beside it.
 void complete(const Input& input, const std::vector<SurveyedControl>& surveyed, const Knowledge& knowledge,
-              const OfferedGaugings& offered, const rating::GaugingFit& fit, double top_m,
-              RatingCurve& curve) {
+              const OfferedGaugings& offered, const rating::GaugingFit& fit, double top_m, Result& result) {
+  RatingCurve& curve = result.curve;
   const bool refined = input.options.hold == HoldPolicy::carried;
   for (ControlCoefficients& control : curve.controls) {
     control.trim_fate = Fate::refitted;
@@ -207,10 +207,10 @@ void complete(const Input& input, const std::vector<SurveyedControl>& surveyed, 
   if (curve.inferred)
     curve.remarks.push_back(
         "no gauging in the period: the curve is inferred from the survey and what is held");
-  remark_governing(curve, top_m);
+  remark_governing(curve, curve.surveyed_top_m);
   remark_buried_crest(curve);
   curve.diagnostics =
-      diagnose({input, surveyed, knowledge.prior, offered.used, curve, fit.covariance, top_m});
+      diagnose({input, surveyed, knowledge.prior, offered.used, curve, result.before, fit.covariance, top_m});
 }
 
 std::vector<std::optional<ControlCoefficients>> before_of(const Input& input,
@@ -247,8 +247,8 @@ bool is_finite(const RatingCurve& curve) {
   return finite;
 }
 
-double highest_level(const Input& input, double top_m) {
-  for (const GaugingAtLevel& gauging : input.gaugings) top_m = std::max(top_m, gauging.level_m);
+double highest_level(const std::vector<Observation>& used, double top_m) {
+  for (const Observation& seen : used) top_m = std::max(top_m, seen.level_m);
   return top_m;
 }
 
@@ -267,14 +267,14 @@ Result derive(const Input& given) {
 
   RatingCurve survey_alone = curve_of(input, starts);
   survey_alone.surveyed_top_m = top_of(surveyed, starts);
-  const double top_m = highest_level(input, survey_alone.surveyed_top_m);
   const Knowledge knowledge = knowledge_of(input, survey_alone, starts);
-  set_to_prior(survey_alone, knowledge.prior, top_m);
+  set_to_prior(survey_alone, knowledge.prior, survey_alone.surveyed_top_m);
   survey_alone.remarks = inheritance.remarks;
   survey_alone.remarks.insert(survey_alone.remarks.end(), knowledge.remarks.begin(), knowledge.remarks.end());
 
   OfferedGaugings offered = offer(input, survey_alone, knowledge.prior);
   if (!offered.refusals.empty()) return refused(std::move(offered.refusals));
+  const double top_m = highest_level(offered.used, survey_alone.surveyed_top_m);
   const RatingCurve feasible = rating::feasible_start(survey_alone, knowledge.prior, offered.used, top_m);
   if (const auto why = poorly_known(input, starts, feasible, offered.used)) return refused({*why});
   const rating::GaugingFit fit = rating::fit_gaugings(survey_alone, knowledge.prior, offered.used, top_m);
@@ -287,11 +287,11 @@ Result derive(const Input& given) {
   Result result;
   result.curve = fit.curve;
   result.curve.remarks.insert(result.curve.remarks.end(), offered.remarks.begin(), offered.remarks.end());
-  complete(input, surveyed, knowledge, offered, fit, top_m, result.curve);
+  result.before = before_of(input, starts);
+  complete(input, surveyed, knowledge, offered, fit, top_m, result);
   if (!is_finite(result.curve)) {
     return refused({"the numbers run out of range: look at the survey's elevations and at the gaugings"});
   }
-  result.before = before_of(input, starts);
   result.status = Status::ok;
   return result;
 }

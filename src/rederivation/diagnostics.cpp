@@ -10,7 +10,7 @@
 #include "hydraulics/power.hpp"
 #include "hydraulics/uniform_flow.hpp"
 #include "rating/evaluate.hpp"
-#include "rederivation/residual_tests.hpp"
+#include "rating/residual_tests.hpp"
 
 namespace scourbook::rederivation {
 namespace {
@@ -37,14 +37,6 @@ std::vector<Deviation> deviations_by_level(const RatingCurve& curve) {
   return all;
 }
 
-const ControlCoefficients* parent_control(const Input& input, const std::string& name) {
-  if (!input.parent) return nullptr;
-  for (const ControlCoefficients& control : input.parent->curve.controls) {
-    if (control.name == name) return &control;
-  }
-  return nullptr;
-}
-
 /// area R^b of the part, or the critical flow with C_d = 1: flow at velocity scale 1.
 double section_flow(const hydraulics::SectionPart& part, FlowLaw law, double level_m) {
   if (law == FlowLaw::critical) return hydraulics::crest_flow(part, level_m, 1);
@@ -68,7 +60,7 @@ void tests_of_signs(const std::vector<Deviation>& deviations, std::vector<Diagno
   }
   const auto positive = static_cast<int>(
       std::count_if(deviations.begin(), deviations.end(), [](const Deviation& d) { return d.ln > 0; }));
-  const double p = sign_test_p(positive, n);
+  const double p = rating::sign_test_p(positive, n);
   out.push_back({"signs_p", p, 0.05, p >= 0.05 ? "passed" : "failed",
                  fmt::format("signs: {} of {} gaugings lie above the curve (p {:.2f})", positive, n, p), rule,
                  kIso});
@@ -84,8 +76,8 @@ void test_of_runs(const std::vector<Deviation>& deviations, std::vector<Diagnost
       static_cast<int>(std::count_if(values.begin(), values.end(), [](double v) { return v > 0; }));
   const auto negative =
       static_cast<int>(std::count_if(values.begin(), values.end(), [](double v) { return v < 0; }));
-  const int runs = count_runs(values);
-  const auto z = n >= kLeastRuns ? runs_z(runs, positive, negative) : std::nullopt;
+  const int runs = rating::count_runs(values);
+  const auto z = n >= kLeastRuns ? rating::runs_z(runs, positive, negative) : std::nullopt;
   if (!z) {
     out.push_back({"runs_z",
                    {},
@@ -108,7 +100,7 @@ void test_of_mean(const std::vector<Deviation>& deviations, std::vector<Diagnost
   const std::string rule = "Student's t of the mean deviation in sds, two-sided, at 5 %";
   std::vector<double> values;
   for (const Deviation& d : deviations) values.push_back(d.ln / d.sd);
-  const auto t = n >= kLeastT ? student_t(values) : std::nullopt;
+  const auto t = n >= kLeastT ? rating::student_t(values) : std::nullopt;
   if (!t) {
     out.push_back({"student_t",
                    {},
@@ -119,7 +111,7 @@ void test_of_mean(const std::vector<Deviation>& deviations, std::vector<Diagnost
                    kIso});
     return;
   }
-  const double limit = student_quantile(0.975, n - 1);
+  const double limit = rating::student_quantile(0.975, n - 1);
   out.push_back({"student_t", *t, limit, std::abs(*t) <= limit ? "passed" : "failed",
                  fmt::format("mean deviation: Student's t {:.2f} against {:.2f}", *t, limit), rule, kIso});
 }
@@ -133,46 +125,54 @@ double median(std::vector<double> values) {
 }  // namespace
 
 void tell_moves(const Derivation& d, std::vector<Diagnostic>& out) {
-  for (const ControlCoefficients& now : d.curve.controls) {
-    const ControlCoefficients* before = parent_control(d.input, now.name);
-    if (before == nullptr) continue;
-    out.push_back(
-        {"move_h0_m " + now.name,
-         now.h0_m - before->h0_m,
-         {},
-         "note",
-         fmt::format(
-             "{}: offset {:+.3f} m, exponent {:+.3f}, area coefficient {:+.1f} %, section coefficient "
-             "{:+.1f} % against curve {}",
-             now.name, now.h0_m - before->h0_m, now.exponent - before->exponent,
-             100 * (now.area_coefficient / before->area_coefficient - 1),
-             100 * (now.section_coefficient / before->section_coefficient - 1), d.input.parent->curve.number),
-         "differences from the parent's",
-         kOwn});
+  for (std::size_t k = 0; k < d.curve.controls.size(); ++k) {
+    const ControlCoefficients& now = d.curve.controls[k];
+    const std::optional<ControlCoefficients>& before = d.before[k];
+    if (!before) continue;
+    const int parent = d.input.parent->curve.number;
+    const auto tell = [&](const char* name, double value, const std::string& text) {
+      out.push_back({fmt::format("{} {}", name, now.name),
+                     value,
+                     {},
+                     "note",
+                     fmt::format("{}: {} against curve {}", now.name, text, parent),
+                     "effective offset and exponent, surveyed coefficients, less the parent's",
+                     kOwn});
+    };
+    const double h0 = now.h0_m - before->h0_m, c = now.area_exponent - before->area_exponent;
+    const double w = 100 * (now.area_coefficient / before->area_coefficient - 1);
+    const double f = 100 * (now.section_coefficient / before->section_coefficient - 1);
+    tell("move_h0_m", h0, fmt::format("offset {:+.3f} m", h0));
+    tell("move_c", c, fmt::format("area exponent {:+.3f}", c));
+    tell("move_w_pct", w, fmt::format("area coefficient {:+.1f} %", w));
+    tell("move_f_pct", f, fmt::format("section coefficient {:+.1f} %", f));
   }
 }
 
+/// The curve's own control against the section as surveyed, put where the allowance and the trims say that it
+/// lies.
 void tell_gap_to_section(const Derivation& d, std::vector<Diagnostic>& out) {
   for (std::size_t k = 0; k < d.curve.controls.size(); ++k) {
     const ControlCoefficients& c = d.curve.controls[k];
     if (!d.surveyed[k].found) continue;
     double gap = 0, at = 0;
     for (const double level : hydraulics::law_levels({c.range_from_m, c.range_to_m})) {
-      const double own = section_flow(d.surveyed[k].part, c.law, level);
-      const double law =
-          c.section_coefficient * std::pow(level - c.surveyed_h0_m, c.velocity_exponent + c.surveyed_c);
-      if (!(own > 0) || std::abs(std::log(law / own)) <= gap) continue;
+      const double own = c.velocity_scale * section_flow(d.surveyed[k].part, c.law, level);
+      const double effective_level = level + (c.h0_m - c.surveyed_h0_m);
+      const double law = rating::control_flow(c, effective_level);
+      if (!(own > 0 && law > 0) || std::abs(std::log(law / own)) <= gap) continue;
       gap = std::abs(std::log(law / own));
-      at = level;
+      at = effective_level;
     }
     out.push_back(
         {"gap_to_section_ln " + c.name,
          gap,
          {},
          "note",
-         fmt::format("{}: the power law is {:.1f} % off the section's own {} at most, at {:.2f} m", c.name,
-                     100 * std::expm1(gap), c.law == FlowLaw::critical ? "critical flow" : "conveyance", at),
-         "largest difference over the levels of the law, as surveyed",
+         fmt::format(
+             "{}: the curve is {:.1f} % off the section's own {} with the same scale at most, at {:.2f} m",
+             c.name, 100 * std::expm1(gap), c.law == FlowLaw::critical ? "critical flow" : "conveyance", at),
+         "largest difference over the levels of the law",
          "divided-channel method; Chow 1959 (from memory)"});
   }
 }
@@ -198,6 +198,7 @@ void tell_gaugings(const Derivation& d, std::vector<Diagnostic>& out) {
                    kOwn});
     return;
   }
+  const double low = deviations.front().level_m, high = deviations.back().level_m;
   out.push_back(
       {"gaugings_used",
        used,
@@ -205,9 +206,23 @@ void tell_gaugings(const Derivation& d, std::vector<Diagnostic>& out) {
        "note",
        fmt::format(
            "{} gaugings used; with a flow: {:.2f} to {:.2f} m, {:.3g} to {:.3g} m3/s; surveyed to {:.2f} m",
-           d.used.size(), deviations.front().level_m, deviations.back().level_m, *d.curve.gauged_low_m3s,
-           *d.curve.gauged_high_m3s, d.curve.surveyed_top_m),
+           d.used.size(), low, high, *d.curve.gauged_low_m3s, *d.curve.gauged_high_m3s,
+           d.curve.surveyed_top_m),
        "number and range",
+       kOwn});
+  const double cease = rating::cease_to_flow_m(d.curve);
+  const double depth = d.curve.surveyed_top_m - cease;
+  if (!(depth > 0)) return;
+  const double share = 100 * (high - low) / depth;
+  out.push_back(
+      {"gauged_spread_pct",
+       share,
+       {},
+       "note",
+       fmt::format("the gaugings span {:.0f} % of the depth from cease-to-flow ({:.2f} m) to the surveyed "
+                   "top, the highest at {:.0f} %",
+                   share, cease, 100 * (high - cease) / depth),
+       "share of the depth",
        kOwn});
 }
 

@@ -14,7 +14,8 @@ struct Derivation {
   const std::vector<SurveyedControl>& surveyed;
   const rating::Prior& prior;
   const std::vector<rating::Observation>& used;
-  const RatingCurve& curve;  ///< fitted
+  const RatingCurve& curve;                                       ///< fitted
+  const std::vector<std::optional<ControlCoefficients>>& before;  ///< as in Result
   const rating::Matrix& covariance;
   double top_m;
 };

@@ -7,9 +7,9 @@
 #include <cmath>
 
 #include "rating/evaluate.hpp"
+#include "rating/residual_tests.hpp"
 #include "rating/unknowns.hpp"
 #include "rederivation/diagnostics.hpp"
-#include "rederivation/residual_tests.hpp"
 
 namespace scourbook::rederivation {
 namespace {
@@ -64,6 +64,21 @@ Diagnostic not_possible(const std::string& name, const std::string& text, const 
   return {name, {}, {}, "not possible", text, rule, source};
 }
 
+/// ": channel 1.31 instead of 1.25": of the held controls that carried flow at a gauging.
+std::string preferred_scales(const Derivation& d, const std::vector<Observation>& seen, double factor) {
+  const auto unknowns = rating::unknowns_of(d.curve);
+  const Matrix jacobian = rating::residual_jacobian(d.curve, seen, unknowns);
+  std::string text;
+  for (std::size_t i = 0; i < unknowns.size(); ++i) {
+    if (unknowns[i].kind != rating::UnknownKind::ln_v1 || !d.prior.held[i]) continue;
+    if (jacobian.col(static_cast<Eigen::Index>(i)).isZero(0)) continue;
+    const ControlCoefficients& control = d.curve.controls[static_cast<std::size_t>(unknowns[i].control)];
+    text += fmt::format("{}{} {:.4g} instead of {:.4g}", text.empty() ? ": " : ", ", control.name,
+                        control.velocity_scale * std::exp(factor), control.velocity_scale);
+  }
+  return text;
+}
+
 /// Largest |ln| between two curves over levels from just above both offsets to the top.
 double largest_gap(const RatingCurve& a, const RatingCurve& b, double top_m) {
   const double from = std::max(rating::cease_to_flow_m(a), rating::cease_to_flow_m(b));
@@ -110,7 +125,8 @@ void test_held_scale(const Derivation& d, std::vector<Diagnostic>& out) {
                  percent(factor),
                  {},
                  "note",
-                 fmt::format("velocity scale that the gaugings prefer: {:+.1f} %", percent(factor)),
+                 fmt::format("velocity scale that the gaugings prefer: {:+.1f} % (sd {:.1f} %){}",
+                             percent(factor), 100 * sd, preferred_scales(d, seen, factor)),
                  rule,
                  source});
   out.push_back(
@@ -122,7 +138,7 @@ void test_held_scale(const Derivation& d, std::vector<Diagnostic>& out) {
        "80 % power at 5 %",
        "common practice"});
   const double chi = dev.r.dot(root.solve(dev.r));
-  const double chi_limit = chi_square_quantile(1 - kLevel, static_cast<double>(dev.r.size()));
+  const double chi_limit = rating::chi_square_quantile(1 - kLevel, static_cast<double>(dev.r.size()));
   out.push_back(
       {"held_chi_square", chi, chi_limit, chi <= chi_limit ? "passed" : "failed",
        fmt::format(

@@ -4,7 +4,7 @@
 #include <optional>
 #include <vector>
 
-namespace scourbook::rederivation {
+namespace scourbook::rating {
 
 /// Two-sided probability of a split as uneven as `positive` of `count` or more so, for even odds (exact
 /// binomial).
@@ -27,4 +27,4 @@ namespace scourbook::rederivation {
 [[nodiscard]] double student_quantile(double p, double freedom);
 [[nodiscard]] double chi_square_quantile(double p, double freedom);
 
-}  // namespace scourbook::rederivation
+}  // namespace scourbook::rating

@@ -1,4 +1,4 @@
-#include "rederivation/residual_tests.hpp"
+#include "rating/residual_tests.hpp"
 
 #include <algorithm>
 #include <boost/math/distributions/binomial.hpp>
@@ -6,7 +6,7 @@
 #include <boost/math/distributions/students_t.hpp>
 #include <cmath>
 
-namespace scourbook::rederivation {
+namespace scourbook::rating {
 
 double sign_test_one_sided_p(int positive, int count) {
   if (positive <= 0) return 1;
@@ -58,4 +58,4 @@ double chi_square_quantile(double p, double freedom) {
   return boost::math::quantile(boost::math::chi_squared(freedom), p);
 }
 
-}  // namespace scourbook::rederivation
+}  // namespace scourbook::rating
