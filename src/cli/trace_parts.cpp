@@ -27,6 +27,13 @@ std::string control_line(const publish::TracedControl& traced) {
                      c.exponent, traced.discharge_m3s, traced.counts ? ", counts" : "");
 }
 
+/// "take" out of "scourbook take BOOK FILE"; the ledger has the whole.
+std::string deed(const std::string& command) {
+  const auto from = command.find(' ');
+  if (from == std::string::npos) return command;
+  return command.substr(from + 1, command.find(' ', from + 1) - from - 1);
+}
+
 }  // namespace
 
 std::string figure_text(const PublishedFigure& figure) {
@@ -104,9 +111,10 @@ Json traced_curve_json(const publish::TracedCurve& traced, bool with_flow) {
 }
 
 std::string acts_text(const std::vector<Act>& acts, UtcOffset offset) {
-  Table table({{"act", Align::right}, {"time"}, {"by"}, {"reason"}, {"command"}});
+  Table table({{"act", Align::right}, {"time"}, {"by"}, {"did"}, {"reason"}});
   for (const Act& act : acts) {
-    table.add({std::to_string(act.number), format_time(act.time, offset), act.who, act.reason, act.command});
+    table.add(
+        {std::to_string(act.number), format_time(act.time, offset), act.who, deed(act.command), act.reason});
   }
   return table.empty() ? std::string() : "acts\n" + table.text();
 }

@@ -118,7 +118,6 @@ Effect effect_of(const store::Book& book, const history::View& before, const std
   if (!span) return effect;
   const StationClock clock = book.station(before.station, before.known)->value.clock;
   const store::Settings settings = book.settings(before.known);
-  const Instant record_end = span->second + std::chrono::milliseconds(1);
   history::View after = before;
   after.edition = Edition{before.station, 0, {}, 0, periods};
 
@@ -128,7 +127,7 @@ Effect effect_of(const store::Book& book, const history::View& before, const std
   for (const auto& adoption : by_time) {
     StretchEffect stretch;
     stretch.from = std::max(adoption.period.from, span->first);
-    stretch.until = end_of(adoption, periods, record_end);
+    stretch.until = end_of(adoption, periods, span->second);
     stretch.curve = adoption.period.curve;
     // The day in which the period begins changes too.
     const StationDay first = day_of(stretch.from, clock), end = first_day_from(stretch.until, clock);
