@@ -42,6 +42,10 @@ std::string figure_text(const PublishedFigure& figure) {
     return units ? publish::format_published(*units, figure.decimals, figure.digits) + " m3/s"
                  : std::string("no figure");
   };
+  if (!figure.units && figure.recomputed) {
+    return fmt::format("  publication {} (replay {}, act {}) covers this time and holds no figure at it\n",
+                       *figure.publication, figure.replay.value_or(0), figure.act);
+  }
   return fmt::format(
       "  published as {} in publication {} (replay {}, act {}); computed again and rounded: {}\n",
       shown(figure.units), *figure.publication, figure.replay.value_or(0), figure.act,
