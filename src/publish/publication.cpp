@@ -48,14 +48,24 @@ store::PublishedDay day_of_mean(const replay::DayMean& mean, const store::Settin
   return day;
 }
 
-void require_digest(const store::ReplayRecord& replay, const replay::FlowBlock& block) {
-  const auto same = [&](const store::ReplayMonth& month) { return month.month == block.month; };
-  const auto kept = std::find_if(replay.months.begin(), replay.months.end(), same);
-  if (kept != replay.months.end() && kept->sha256 == digest(block)) return;
+[[noreturn]] void differs(const store::ReplayRecord& replay, const std::string& what) {
   throw store::StoreError(
       store::StoreError::Kind::damaged,
       fmt::format("replay {} of {}: computing {} again does not give the flows that were kept", replay.number,
-                  replay.station, format_month(block.month)));
+                  replay.station, what));
+}
+
+void require_digest(const store::ReplayRecord& replay, const replay::FlowBlock& block) {
+  const auto same = [&](const store::ReplayMonth& month) { return month.month == block.month; };
+  const auto kept = std::find_if(replay.months.begin(), replay.months.end(), same);
+  const bool equal = kept != replay.months.end() && kept->sha256 == digest(block);
+  if (!equal) differs(replay, format_month(block.month));
+}
+
+/// No month that was kept has gone.
+void require_months(const store::ReplayRecord& replay, std::int64_t found) {
+  const auto kept = static_cast<std::int64_t>(replay.months.size());
+  if (found != kept) differs(replay, fmt::format("its {} months ({} have readings)", kept, found));
 }
 
 /// The first station day that begins at or after `time`.
@@ -67,10 +77,12 @@ StationDay whole_day_from(Instant time, const StationClock& clock) {
 }  // namespace
 
 store::Publication make_publication(const store::Book& book, const store::ReplayRecord& replay,
-                                    const std::function<void(std::int64_t, std::int64_t)>& progress) {
-  const history::View view = history::view_of(book, replay.station, {}, replay.edition, replay.data_version);
-  const StationClock clock = book.station(replay.station)->value.clock;
-  const store::Settings settings = book.settings();
+                                    const std::function<void(std::int64_t, std::int64_t)>& progress,
+                                    Known known) {
+  const history::View view =
+      history::view_of(book, replay.station, known, replay.edition, replay.data_version);
+  const StationClock clock = book.station(replay.station, known)->value.clock;
+  const store::Settings settings = book.settings(known);
   const StationDay first = whole_day_from(replay.from, clock), end = day_of(replay.until, clock);
   if (end <= first) {
     throw store::StoreError(
@@ -93,12 +105,14 @@ store::Publication make_publication(const store::Book& book, const store::Replay
     require_digest(replay, block);
     auto month = month_of(block, publication.from, publication.until, settings);
     if (!month.time_ms.empty()) publication.months.push_back(std::move(month));
-    if (progress) progress(++done, 2 * all);
+    ++done;
+    if (progress) progress(done, 2 * all);
   });
+  require_months(replay, done);
   replayer.day_means(first, end, [&](const replay::DayMean& mean) {
     publication.days.push_back(day_of_mean(mean, settings));
-    if (progress)
-      progress(all + all * (mean.day.number - first.number) / (end.number - first.number), 2 * all);
+    const std::int64_t days = mean.day.number - first.number + 1;
+    if (progress) progress(all + all * days / (end.number - first.number), 2 * all);
   });
   return publication;
 }

@@ -10,12 +10,14 @@ namespace scourbook::publish {
 
 /// The publication (number 0, without sha256) of a kept replay: its whole station days, values at the
 /// readings and day means, rounded as the settings say. Computes the flows anew from the replay's edition,
-/// data version and method, and throws StoreError damaged where their digests differ from those kept.
+/// data version and method, and throws StoreError damaged where their digests differ from those kept, refused
+/// where the replay holds no whole station day.
 /// Published quality: what is only unchecked because it was not published becomes good.
-/// `progress(months done, months in all)` may be empty.
+/// `progress(months done, months in all)` may be empty. Settings and the station's clock as known: what was
+/// published at act N is made again with `known` N - 1.
 [[nodiscard]] store::Publication make_publication(
     const store::Book& book, const store::ReplayRecord& replay,
-    const std::function<void(std::int64_t, std::int64_t)>& progress = {});
+    const std::function<void(std::int64_t, std::int64_t)>& progress = {}, Known known = {});
 
 /// The number of the newest publication, at most known.act, that covers `time`; nothing where none does.
 [[nodiscard]] std::optional<int> publication_at(const store::Book& book, const std::string& station,
