@@ -5,6 +5,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "publish/coverage.hpp"
 #include "publish/rounding.hpp"
 #include "replay/replay.hpp"
 
@@ -119,26 +120,17 @@ store::Publication make_publication(const store::Book& book, const store::Replay
 
 std::optional<int> publication_at(const store::Book& book, const std::string& station, Instant time,
                                   Known known) {
-  std::optional<int> newest;
-  for (const auto& publication : book.publications(station, known)) {
-    if (publication.from <= time && time < publication.until) newest = publication.number;
-  }
-  return newest;
+  const auto covered = coverage(book.publications(station, known), time, time + Millis(1));
+  if (covered.empty()) return {};
+  return covered.front().publication;
 }
 
 PublicationState state_of(const store::Publication& publication, const std::vector<store::Publication>& all) {
-  // What newer ones leave uncovered: begin with its whole span and cut.
-  std::vector<std::pair<Instant, Instant>> left{{publication.from, publication.until}};
-  for (const auto& newer : all) {
-    if (newer.number <= publication.number) continue;
-    std::vector<std::pair<Instant, Instant>> rest;
-    for (const auto& [from, until] : left) {
-      if (from < std::min(until, newer.from)) rest.emplace_back(from, std::min(until, newer.from));
-      if (std::max(from, newer.until) < until) rest.emplace_back(std::max(from, newer.until), until);
-    }
-    left = std::move(rest);
-  }
-  return left.empty() ? PublicationState::superseded : PublicationState::published;
+  const auto covered = coverage(all, publication.from, publication.until);
+  const bool speaks = std::any_of(covered.begin(), covered.end(), [&](const Coverage& stretch) {
+    return stretch.publication == publication.number;
+  });
+  return speaks ? PublicationState::published : PublicationState::superseded;
 }
 
 }  // namespace scourbook::publish

@@ -24,7 +24,8 @@ namespace scourbook::publish {
                                                 Instant time, Known known = {});
 
 enum class PublicationState { published, superseded };
-/// superseded: newer publications cover all of its days.
+/// superseded: newer publications cover all of its days. `all`: those of its station as known, numbers
+/// rising, itself among them.
 [[nodiscard]] PublicationState state_of(const store::Publication& publication,
                                         const std::vector<store::Publication>& all);
 
