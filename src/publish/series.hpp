@@ -34,7 +34,7 @@ struct SeriesRequest {
 struct SeriesRow {
   Instant time{};  ///< of the reading, or the start of what the mean is over
   std::optional<double> discharge_m3s;
-  std::int64_t units = 0;  ///< published series: the figure as published, in 10^-decimals m3/s
+  std::int64_t units = 0;  ///< published values and days: the figure, in 10^-decimals m3/s
   double u95_pct = 0;      ///< of a published series in tenths
   Quality quality = Quality::missing;
   std::vector<int> curves;  ///< that took part, in order of time
@@ -56,14 +56,14 @@ struct SeriesHead {
   std::vector<std::string> survey_of_curve;  ///< index: curve number; empty where no such curve
 };
 
-/// Runs a request: `head` once, then `row` in order of time.
+/// Runs a request: `head` once, then `row` in order of time. At most a month of working flows, or one
+/// publication, is held in memory.
 ///   none        Replayer::run; a reading without flow is a row without discharge
 ///   day         Replayer::day_means
 ///   month, water_year   mean of the day means weighted by their shares; the sd is the flow-weighted mean of
 ///               those of the days (errors of a curve go together); not given under the least share
-///   published   instants and days of the newest publication that covers each; months and water years as
-///   above
-///               from published days
+///   published   values and days of the newest publication that covers each; months and water years as
+///               above, from published days. Times that are not published have no row
 /// Throws StoreError refused for an unknown station and where there is no edition, or nothing published.
 void run_series(const store::Book& book, const SeriesRequest& request,
                 const std::function<void(const SeriesHead&)>& head,
