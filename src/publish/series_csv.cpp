@@ -11,32 +11,74 @@ namespace {
 
 constexpr std::size_t kChunk = 1 << 16;
 
+/// Lines that start with "# ", none longer than 159 bytes unless one word is. What would end a line (a name
+/// may hold it) becomes a space.
+std::string comment(const std::string& text) {
+  constexpr std::size_t kWidth = 159;
+  std::string lines, line = "#", word;
+  const auto take = [&] {
+    if (line.size() > 1 && line.size() + 1 + word.size() > kWidth) {
+      lines += line + "\n";
+      line = "# ";
+    }
+    if (!word.empty()) line += " " + word;
+    word.clear();
+  };
+  for (const char c : text) {
+    const bool is_space = c == ' ' || (c >= 0 && c < 32) || c == 127;
+    if (is_space) {
+      take();
+    } else {
+      word += c;
+    }
+  }
+  take();
+  return lines + line + "\n";
+}
+
 std::string what_of(const SeriesHead& head) {
   const MeanOver mean = head.request.mean;
-  return mean == MeanOver::none ? std::string("flow at every reading")
-                                : fmt::format("mean flow over each {}", word(mean));
+  const std::string what = mean == MeanOver::none
+                               ? std::string("flow at every reading")
+                               : fmt::format("mean flow of each {} (station clock)",
+                                             mean == MeanOver::water_year ? "water year" : word(mean));
+  return what;
+}
+
+/// Which state of knowledge it is.
+std::string state_of(const SeriesHead& head, const std::string& known) {
+  if (head.request.published) {
+    return fmt::format("published: publication{} {}; as known at act {} ({})",
+                       head.publications.size() == 1 ? "" : "s", fmt::join(head.publications, ", "),
+                       head.known_act, known);
+  }
+  return fmt::format(
+      "working record, not published: edition {}, data version {}, method version {}, as known at act {} "
+      "({})",
+      head.edition, head.data_version, head.method, head.known_act, known);
+}
+
+std::string columns_of(const SeriesHead& head) {
+  const bool mean = head.request.mean != MeanOver::none;
+  return fmt::format(
+      "columns: time {}; discharge_m3s in m3/s, empty where there is none; u95_pct its 95 % uncertainty in "
+      "percent; quality in the words of OGC WaterML 2.0; curve the rating curves that took part, survey "
+      "theirs; flags of the flow{}",
+      mean ? "the date on which it begins" : "of the reading",
+      mean ? "; share of it with a flow, 0 to 1" : "");
 }
 
 std::string head_text(const store::Book& book, const SeriesHead& head, UtcOffset shown) {
   const Station& station = head.station;
-  std::string text = fmt::format("# {} {}{}: {}\n", station.id, station.name,
-                                 station.river.empty() ? "" : ", " + station.river, what_of(head));
-  text += fmt::format("# from {} until {}\n", format_time(head.request.from, shown),
-                      format_time(head.request.until, shown));
   const std::string known =
-      head.known_act > 0 ? format_time(book.act(head.known_act).time, shown) : "the begin";
-  if (head.request.published) {
-    text += fmt::format("# published: publication{} {}; as known at act {} ({})\n",
-                        head.publications.size() == 1 ? "" : "s", fmt::join(head.publications, ", "),
-                        head.known_act, known);
-  } else {
-    text += fmt::format(
-        "# working record, not published: edition {}, data version {}, method version {}, as known at act {} "
-        "({})\n",
-        head.edition, head.data_version, head.method, head.known_act, known);
-  }
-  text += "# discharge in m3/s; u95_pct: 95 % uncertainty in percent; quality: OGC WaterML 2.0 words\n";
-  return text + "# " + caution() + "\n";
+      head.known_act > 0 ? format_time(book.act(head.known_act).time, shown) : "before the first act";
+  std::string text = comment("station " + station.id + ": " + station.name);
+  if (!station.river.empty()) text += comment("river " + station.river);
+  text += comment(what_of(head));
+  text += comment(fmt::format("from {} until {} (excluded)", format_time(head.request.from, shown),
+                              format_time(head.request.until, shown)));
+  text += comment(state_of(head, known));
+  return text + comment(columns_of(head)) + comment(caution());
 }
 
 std::string survey_words(const SeriesRow& row, const SeriesHead& head) {
@@ -85,9 +127,8 @@ void append_row(fmt::memory_buffer& out, const SeriesRow& row, const SeriesHead&
 }  // namespace
 
 std::string caution() {
-  return "Computed flows are estimates. No basis for flood warning, water supply or dam safety without "
-         "checks by those "
-         "responsible; local rules and licensed practice come first.";
+  return "Flows are estimates from curves: not for flood, water supply or dam safety decisions unless those "
+         "responsible check; local rules, licensed practice prevail.";
 }
 
 void write_csv(const store::Book& book, const SeriesRequest& request, UtcOffset shown, std::ostream& out) {
