@@ -9,6 +9,10 @@ namespace scourbook::rating {
 namespace {
 
 constexpr double kShortStep = 1e-6;  // in sd
+// Below this length of a step, in sd, the sum of squares may no longer show a decrease in its rounding
+// (levels carry 1e-13 m and more), while the step itself is still good to far more digits.
+constexpr double kFlat = 1e-3;
+constexpr double kRoundingOfSum = 1e-9;
 
 using Factorisation = Eigen::ColPivHouseholderQR<Matrix>;
 
@@ -44,6 +48,8 @@ class Minimisation {
   [[nodiscard]] Matrix stacked_jacobian(const Vector& x, const Vector& sds) const;
   /// Moves x by the largest halved fraction of `step` that lowers the sum of squares; false where none does.
   bool halve_into_decrease(const Vector& step, const Vector& sds);
+  /// Moves x by the whole of a short step that raises the sum by no more than rounding.
+  bool step_on_the_flat(const Vector& step, const Vector& sds, double unit);
   /// Sum of squares, residual sd and covariance at x.
   void finish();
 
@@ -85,6 +91,16 @@ bool Minimisation::halve_into_decrease(const Vector& step, const Vector& sds) {
   return false;
 }
 
+bool Minimisation::step_on_the_flat(const Vector& step, const Vector& sds, double unit) {
+  const Vector tried = fit_.x + step;
+  if (!is_feasible(tried)) return false;
+  const double before = stacked_residuals(fit_.x, sds).squaredNorm();
+  const double after = stacked_residuals(tried, sds).squaredNorm();
+  if (!(after <= before + kRoundingOfSum * std::max(unit * unit, before))) return false;
+  fit_.x = tried;
+  return true;
+}
+
 void Minimisation::finish() {
   const Eigen::Index count = problem_.residuals(fit_.x).size();
   const Vector sds = sds_at(fit_.x, count);
@@ -104,6 +120,7 @@ LeastSquaresFit Minimisation::run(const Vector& start) {
     return fit_;
   }
   fit_.status = FitStatus::too_many_steps;
+  double last_length = kFlat;  // in sd; on the flat each step must be shorter than the one before
   for (fit_.steps = 0; fit_.steps < options_.max_steps; ++fit_.steps) {
     const Vector sds = sds_at(fit_.x, problem_.residuals(fit_.x).size());
     const Vector r = stacked_residuals(fit_.x, sds);
@@ -122,6 +139,9 @@ LeastSquaresFit Minimisation::run(const Vector& start) {
       fit_.status = FitStatus::converged;
       break;
     }
+    const bool on_the_flat = length < std::min(kFlat, last_length) * unit;
+    last_length = length / unit;
+    if (on_the_flat && step_on_the_flat(step, sds, unit)) continue;
     if (!halve_into_decrease(step, sds)) {
       // A short step without a decrease is rounding: the sum is flat to its last digits.
       fit_.status = length <= kShortStep * unit ? FitStatus::converged : FitStatus::at_kink;

@@ -27,7 +27,7 @@ Pair pair(double hs, double as, double ps, double hc, double ac, double pc) {
 /// The lowest step of a fine ladder where the section's flow passes from below the channel's to not below it.
 std::optional<double> by_search(const Pair& p, double top) {
   const double from = std::max(p.section.h0_m, p.channel.h0_m);
-  constexpr int kSteps = 200000;
+  constexpr int kSteps = 20000;
   bool section_governed = false;
   for (int i = 1; i <= kSteps; ++i) {
     const double z = from + (top - from) * i / kSteps;
@@ -63,7 +63,7 @@ TEST_CASE("several crossings: the lowest from section to channel") {
   const Pair p = pair(100.5, 12, 1.5, 100, 4, 1.9);
   const auto found = find_takeover(p.section, p.channel, 200);
   REQUIRE(found);
-  CHECK(*found == Approx(*by_search(p, 130)).margin(2e-4));
+  CHECK(*found == Approx(*by_search(p, 130)).margin(2e-3));
   CHECK(control_flow(p.section, *found + 80) < control_flow(p.channel, *found + 80));
   RatingCurve curve;
   curve.controls = {p.section, p.channel};
@@ -98,14 +98,14 @@ TEST_CASE("a thousand random pairs against a search level by level") {
     CAPTURE(p.channel.h0_m, p.channel.flow_scale, p.channel.exponent);
     const auto found = find_takeover(p.section, p.channel, top);
     const auto expected = by_search(p, top);
-    // The ladder's first step and last step are 3e-5 m wide: a crossing inside them is not seen by it.
+    // The ladder's first step and last step are 3e-4 m wide: a crossing inside them is not seen by it.
     if (!expected && found) {
       const double from = std::max(p.section.h0_m, p.channel.h0_m);
-      CHECK((*found < from + 4e-5 || *found > top - 4e-5));
+      CHECK((*found < from + 4e-4 || *found > top - 4e-4));
       continue;
     }
     REQUIRE(found.has_value() == expected.has_value());
-    if (found) CHECK(*found == Approx(*expected).margin(1e-4));
+    if (found) CHECK(*found == Approx(*expected).margin(4e-4));
     (found ? with : without) += 1;
   }
   CHECK(with > 100);
