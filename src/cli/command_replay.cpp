@@ -11,7 +11,7 @@ struct ReplayArguments : Arguments {
   std::string from, until;
 };
 
-/// The whole record where the range is not given.
+/// The station days of the whole record where the range is not given.
 std::pair<Instant, Instant> range_of(const store::Book& book, const ReplayArguments& arguments,
                                      const Station& station, Known data) {
   const auto span = book.stage_span(arguments.station, data);
@@ -20,10 +20,12 @@ std::pair<Instant, Instant> range_of(const store::Book& book, const ReplayArgume
         store::StoreError::Kind::refused,
         fmt::format("{} has no stage yet; take in a stage file first", arguments.station));
   }
-  const UtcOffset offset = station.clock.offset;
-  const Instant from = arguments.from.empty() ? span->first : time_of(arguments.from, offset, "--from");
-  const Instant until =
-      arguments.until.empty() ? span->second + Millis(1) : time_of(arguments.until, offset, "--until");
+  const StationClock& clock = station.clock;
+  const StationDay last = day_of(span->second, clock);
+  const Instant from = arguments.from.empty() ? start_of(day_of(span->first, clock), clock)
+                                              : time_of(arguments.from, clock.offset, "--from");
+  const Instant until = arguments.until.empty() ? start_of(StationDay{last.number + 1}, clock)
+                                                : time_of(arguments.until, clock.offset, "--until");
   if (until <= from) throw UsageError("--until is not after --from");
   return {from, until};
 }
@@ -91,9 +93,10 @@ void add_replay(CLI::App& program, Chosen& chosen) {
       "compute the flows of a range, each from the curve valid at its time, and keep their digests");
   add_book(command, *arguments);
   add_station(command, *arguments);
-  command.add_option("--from", arguments->from, "begin of the range; the first reading where not given");
+  command.add_option("--from", arguments->from,
+                     "begin of the range; the day of the first reading where not given");
   command.add_option("--until", arguments->until,
-                     "end of the range, excluded; after the last reading where not given");
+                     "end of the range, excluded; the end of the last reading's day where not given");
   add_view(command, *arguments);
   add_writer(command, *arguments, "why, for the ledger");
   add_json(command, *arguments);

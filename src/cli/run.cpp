@@ -1,12 +1,15 @@
 #include "cli/run.hpp"
 
 #include <fmt/format.h>
+#include <fmt/ranges.h>
 
 #include <cstdio>
 #include <new>
 
 #include "cli/commands.hpp"
 #include "publish/series.hpp"
+#include "terms/finding.hpp"
+#include "terms/nearest.hpp"
 
 namespace scourbook::cli {
 namespace {
@@ -34,6 +37,19 @@ int say(const char* what, const std::string& why, Exit exit) {
 int status_of(store::StoreError::Kind kind) {
   using Kind = store::StoreError::Kind;
   return static_cast<int>(kind == Kind::damaged || kind == Kind::newer ? Exit::damaged : Exit::refused);
+}
+
+/// What to say where the first word is no command; nothing where it is one, or an option.
+std::optional<std::string> unknown_command(const CLI::App& program, int argc, char** argv) {
+  if (argc < 2 || argv[1][0] == '-') return {};
+  std::vector<std::string> names;
+  for (const CLI::App* command : program.get_subcommands([](const CLI::App*) { return true; })) {
+    if (command->get_name() == argv[1]) return {};
+    names.push_back(command->get_name());
+  }
+  const std::string near = nearest_word(argv[1], names);
+  return fmt::format("there is no command {}{}; the commands are {}", in_quotes(argv[1]),
+                     near.empty() ? "" : "; did you mean " + near + "?", fmt::join(names, ", "));
 }
 
 int act_on(const Chosen& chosen) {
@@ -71,6 +87,7 @@ int run(int argc, char** argv) {
                          add_publish, add_flows, add_trace, add_check, add_ledger}) {
     add(program, chosen);
   }
+  if (const auto unknown = unknown_command(program, argc, argv)) return say("", *unknown, Exit::bad_input);
   try {
     program.parse(argc, argv);
   } catch (const CLI::ParseError& error) {

@@ -13,6 +13,7 @@ namespace {
 std::string reading_text(const publish::TracedReading& r, UtcOffset offset) {
   std::string text = fmt::format("reading {}: {} ({}), {} line {}, act {}\n", format_time(r.time, offset),
                                  r.recorded, word(r.quality), r.file, r.line, r.act);
+  if (!r.has_level) return text;
   text += fmt::format("  stage {:.8g} m + gauge zero {:.8g} m ({} line {})", r.stage.metres(),
                       r.gauge_zero.metres(), r.gauge_zero_file, r.gauge_zero_source.line);
   if (r.correction.ticks() != 0) text += fmt::format(" + stage correction {:+.8g} m", r.correction.metres());
@@ -20,19 +21,19 @@ std::string reading_text(const publish::TracedReading& r, UtcOffset offset) {
 }
 
 Json reading_json(const publish::TracedReading& r, UtcOffset offset) {
-  return {{"time", format_time(r.time, offset)},
-          {"recorded", r.recorded},
-          {"quality", word(r.quality)},
-          {"stage_m", r.stage.metres()},
-          {"gauge_zero_m", r.gauge_zero.metres()},
-          {"stage_correction_m", r.correction.metres()},
-          {"level_m", r.level.metres()},
-          {"file", r.file},
-          {"line", r.line},
-          {"file_sha256", r.file_sha256},
-          {"act", r.act},
-          {"gauge_zero_file", r.gauge_zero_file},
-          {"gauge_zero_line", r.gauge_zero_source.line}};
+  Json json = {{"time", format_time(r.time, offset)}, {"recorded", r.recorded}, {"quality", word(r.quality)}};
+  const auto metres = [&](double value) { return r.has_level ? Json(value) : Json(nullptr); };
+  json["stage_m"] = metres(r.stage.metres());
+  json["gauge_zero_m"] = metres(r.gauge_zero.metres());
+  json["stage_correction_m"] = metres(r.correction.metres());
+  json["level_m"] = metres(r.level.metres());
+  json["file"] = r.file;
+  json["line"] = r.line;
+  json["file_sha256"] = r.file_sha256;
+  json["act"] = r.act;
+  json["gauge_zero_file"] = r.gauge_zero_file;
+  json["gauge_zero_line"] = r.gauge_zero_source.line;
+  return json;
 }
 
 std::string flow_text(const std::optional<double>& flow, double sd, Flags flags, Quality quality) {

@@ -14,7 +14,8 @@ namespace scourbook::publish {
 /// One reading of a chain and how it becomes a level.
 struct TracedReading {
   Instant time{};
-  std::string recorded;  ///< as recorded, with its unit: "1.234 m"
+  std::string recorded;    ///< as recorded, with its unit: "1.234 m"; "missing"
+  bool has_level = false;  ///< it has a value and a gauge zero; else stage, correction and level are 0
   Quality quality = Quality::unchecked;
   Stage stage;
   std::string file;  ///< name of the file it came from

@@ -124,7 +124,9 @@ class ValueTracer {
     if (!origin) return;
     TracedReading reading;
     reading.time = time;
-    reading.recorded = origin->recorded + (origin->unit == store::StageUnit::metre ? " m" : " ft");
+    reading.recorded = origin->recorded;
+    if (reading.recorded != "missing")
+      reading.recorded += origin->unit == store::StageUnit::metre ? " m" : " ft";
     reading.quality = origin->quality;
     reading.file_number = origin->file;
     reading.line = origin->line;
@@ -135,6 +137,7 @@ class ValueTracer {
     }
     const auto held = again_.readings(time, time);
     if (!held.empty()) {
+      reading.has_level = true;
       reading.stage = held.front().stage;
       reading.level = held.front().level;
       reading.correction = again_.datum().correction_at(time);
