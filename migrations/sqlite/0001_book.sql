@@ -245,7 +245,7 @@ CREATE TABLE gauging (
   area_m2 REAL CHECK (abs(area_m2) < 1e300),
   width_m REAL CHECK (abs(width_m) < 1e300),
   velocity_ms REAL CHECK (abs(velocity_ms) < 1e300),
-  quality TEXT NOT NULL,
+  quality TEXT NOT NULL CHECK (quality IN ('good', 'unchecked', 'estimate', 'suspect', 'poor', 'missing')),
   remark TEXT NOT NULL,
   PRIMARY KEY (station, id, version)
 ) STRICT, WITHOUT ROWID;
@@ -297,6 +297,7 @@ CREATE TABLE stage_piece (
   station TEXT NOT NULL,
   month INTEGER NOT NULL,
   merged INTEGER NOT NULL CHECK (merged IN (0, 1)),
+  file INTEGER NOT NULL REFERENCES file (id) DEFERRABLE INITIALLY DEFERRED,
   span_first_ms INTEGER NOT NULL,
   span_last_ms INTEGER NOT NULL CHECK (span_last_ms >= span_first_ms),
   first_ms INTEGER NOT NULL,
@@ -312,7 +313,7 @@ CREATE TABLE stage_piece (
 
 CREATE INDEX stage_piece_of_act ON stage_piece (act);
 
-CREATE INDEX stage_piece_of_month ON stage_piece (station, month, id);
+CREATE INDEX stage_piece_of_month ON stage_piece (station, month, id, act, merged, count);
 
 CREATE TRIGGER stage_piece_keeps_rows BEFORE UPDATE ON stage_piece BEGIN
   SELECT RAISE(ABORT, 'stage_piece: rows of a book are never changed; a correction is a new version');
@@ -330,7 +331,7 @@ CREATE TABLE curve (
   number INTEGER NOT NULL CHECK (number >= 1),
   act INTEGER NOT NULL REFERENCES act (number) DEFERRABLE INITIALLY DEFERRED,
   form TEXT NOT NULL CHECK (form IN ('power', 'conveyance')),
-  hold TEXT NOT NULL,
+  hold TEXT NOT NULL CHECK (hold IN ('velocity-scale', 'carried', 'flow-scale')),
   lineage INTEGER NOT NULL,
   parent INTEGER,
   survey TEXT NOT NULL,
@@ -349,7 +350,10 @@ CREATE TABLE curve (
   unknowns TEXT NOT NULL,
   covariance TEXT NOT NULL,
   remarks TEXT NOT NULL,
-  PRIMARY KEY (station, number)
+  PRIMARY KEY (station, number),
+  FOREIGN KEY (station, lineage) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED,
+  FOREIGN KEY (station, parent) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED,
+  FOREIGN KEY (station, survey, survey_version) REFERENCES survey (station, id, version) DEFERRABLE INITIALLY DEFERRED
 ) STRICT, WITHOUT ROWID;
 
 CREATE INDEX curve_of_act ON curve (act);
@@ -397,12 +401,13 @@ CREATE TABLE curve_control (
   area_exponent REAL NOT NULL CHECK (abs(area_exponent) < 1e300),
   exponent REAL NOT NULL CHECK (abs(exponent) < 1e300),
   flow_scale REAL NOT NULL CHECK (abs(flow_scale) < 1e300),
-  scale_fate TEXT NOT NULL,
-  allowance_fate TEXT NOT NULL,
-  survey_fate TEXT NOT NULL,
-  trim_fate TEXT NOT NULL,
+  scale_fate TEXT NOT NULL CHECK (scale_fate IN ('held', 'recomputed', 'refitted', 'carried', 'rescaled', 'new')),
+  allowance_fate TEXT NOT NULL CHECK (allowance_fate IN ('held', 'recomputed', 'refitted', 'carried', 'rescaled', 'new')),
+  survey_fate TEXT NOT NULL CHECK (survey_fate IN ('held', 'recomputed', 'refitted', 'carried', 'rescaled', 'new')),
+  trim_fate TEXT NOT NULL CHECK (trim_fate IN ('held', 'recomputed', 'refitted', 'carried', 'rescaled', 'new')),
   PRIMARY KEY (station, curve, number),
-  FOREIGN KEY (station, curve) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED
+  FOREIGN KEY (station, curve) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED,
+  FOREIGN KEY (station, survey, survey_version) REFERENCES survey (station, id, version) DEFERRABLE INITIALLY DEFERRED
 ) STRICT, WITHOUT ROWID;
 
 CREATE INDEX curve_control_of_act ON curve_control (act);
@@ -426,7 +431,8 @@ CREATE TABLE curve_reach (
   reach INTEGER NOT NULL,
   version INTEGER NOT NULL,
   PRIMARY KEY (station, curve, number),
-  FOREIGN KEY (station, curve) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED
+  FOREIGN KEY (station, curve) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED,
+  FOREIGN KEY (reach, version) REFERENCES reach (row, version) DEFERRABLE INITIALLY DEFERRED
 ) STRICT, WITHOUT ROWID;
 
 CREATE INDEX curve_reach_of_act ON curve_reach (act);
@@ -473,7 +479,7 @@ CREATE TABLE curve_gauging (
   act INTEGER NOT NULL REFERENCES act (number) DEFERRABLE INITIALLY DEFERRED,
   gauging TEXT NOT NULL,
   version INTEGER NOT NULL,
-  gauging_use TEXT NOT NULL,
+  gauging_use TEXT NOT NULL CHECK (gauging_use IN ('used', 'left out', 'weighted down')),
   reason TEXT NOT NULL,
   role TEXT NOT NULL,
   level_m REAL NOT NULL CHECK (abs(level_m) < 1e300),
@@ -482,7 +488,8 @@ CREATE TABLE curve_gauging (
   residual REAL CHECK (abs(residual) < 1e300),
   sd_ln_q REAL NOT NULL CHECK (abs(sd_ln_q) < 1e300),
   PRIMARY KEY (station, curve, number),
-  FOREIGN KEY (station, curve) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED
+  FOREIGN KEY (station, curve) REFERENCES curve (station, number) DEFERRABLE INITIALLY DEFERRED,
+  FOREIGN KEY (station, gauging, version) REFERENCES gauging (station, id, version) DEFERRABLE INITIALLY DEFERRED
 ) STRICT, WITHOUT ROWID;
 
 CREATE INDEX curve_gauging_of_act ON curve_gauging (act);
@@ -532,7 +539,8 @@ CREATE TABLE edition (
   number INTEGER NOT NULL CHECK (number >= 1),
   act INTEGER NOT NULL REFERENCES act (number) DEFERRABLE INITIALLY DEFERRED,
   parent INTEGER,
-  PRIMARY KEY (station, number)
+  PRIMARY KEY (station, number),
+  FOREIGN KEY (station, parent) REFERENCES edition (station, number) DEFERRABLE INITIALLY DEFERRED
 ) STRICT, WITHOUT ROWID;
 
 CREATE INDEX edition_of_act ON edition (act);
@@ -608,7 +616,7 @@ CREATE TABLE replay_month (
   replay INTEGER NOT NULL,
   month INTEGER NOT NULL,
   act INTEGER NOT NULL REFERENCES act (number) DEFERRABLE INITIALLY DEFERRED,
-  count INTEGER NOT NULL,
+  count INTEGER NOT NULL CHECK (count >= 0),
   sha256 TEXT NOT NULL CHECK (length(sha256) = 64),
   PRIMARY KEY (station, replay, month),
   FOREIGN KEY (station, replay) REFERENCES replay (station, number) DEFERRABLE INITIALLY DEFERRED
@@ -660,8 +668,9 @@ CREATE TABLE publication_month (
   publication INTEGER NOT NULL,
   month INTEGER NOT NULL,
   act INTEGER NOT NULL REFERENCES act (number) DEFERRABLE INITIALLY DEFERRED,
-  count INTEGER NOT NULL,
-  times_ms TEXT NOT NULL,
+  count INTEGER NOT NULL CHECK (count >= 0),
+  first_ms INTEGER NOT NULL,
+  step_ms INTEGER NOT NULL CHECK (step_ms >= 0),
   flow_values TEXT NOT NULL,
   u95_tenth_pct TEXT NOT NULL,
   flag_runs TEXT NOT NULL,
@@ -692,7 +701,7 @@ CREATE TABLE publication_day (
   mean INTEGER,
   u95_tenth_pct INTEGER,
   flags INTEGER NOT NULL,
-  quality TEXT NOT NULL,
+  quality TEXT NOT NULL CHECK (quality IN ('good', 'unchecked', 'estimate', 'suspect', 'poor', 'missing')),
   share REAL NOT NULL CHECK (share BETWEEN 0 AND 1),
   curves TEXT NOT NULL,
   PRIMARY KEY (station, publication, day),
@@ -711,31 +720,101 @@ CREATE TRIGGER publication_day_replaces_no_row BEFORE INSERT ON publication_day 
   SELECT RAISE(ABORT, 'publication_day: a row with this key exists; rows of a book are never replaced');
 END;
 
--- ---- plain views for other tools -------------------------------------------------------------------------
+-- ---- plain views for other tools: newest versions, one reading a row, times as text --------------------------
+
+CREATE VIEW station_now AS
+SELECT s.* FROM station s
+WHERE s.withdrawn = 0 AND s.version = (SELECT max(o.version) FROM station o WHERE o.id = s.id);
+
+CREATE VIEW gauge_zero_now AS
+SELECT z.station, strftime('%Y-%m-%dT%H:%M:%fZ', z.valid_from_ms / 1000.0, 'unixepoch') AS valid_from,
+       z.zero_ticks / 1e8 AS gauge_zero_m, z.remark, z.version, z.act, z.file, z.line
+FROM gauge_zero z
+WHERE z.withdrawn = 0
+  AND z.version = (SELECT max(o.version) FROM gauge_zero o
+                   WHERE o.station = z.station AND o.valid_from_ms = z.valid_from_ms);
+
+CREATE VIEW reach_now AS
+SELECT strftime('%Y-%m-%dT%H:%M:%fZ', r.valid_from_ms / 1000.0, 'unixepoch') AS valid_from, r.*
+FROM reach r
+WHERE r.withdrawn = 0 AND r.version = (SELECT max(o.version) FROM reach o WHERE o.row = r.row);
+
+CREATE VIEW survey_now AS
+SELECT strftime('%Y-%m-%dT%H:%M:%fZ', s.surveyed_at_ms / 1000.0, 'unixepoch') AS surveyed_at, s.*
+FROM survey s
+WHERE s.withdrawn = 0
+  AND s.version = (SELECT max(o.version) FROM survey o WHERE o.station = s.station AND o.id = s.id);
+
+CREATE VIEW survey_point_now AS
+SELECT p.* FROM survey_point p JOIN survey_now s
+  ON s.station = p.station AND s.id = p.survey AND s.version = p.version;
+
+CREATE VIEW gauging_now AS
+SELECT strftime('%Y-%m-%dT%H:%M:%fZ', g.start_ms / 1000.0, 'unixepoch') AS start, g.stage_ticks / 1e8 AS stage_m, g.*
+FROM gauging g
+WHERE g.withdrawn = 0
+  AND g.version = (SELECT max(o.version) FROM gauging o WHERE o.station = g.station AND o.id = g.id);
+
+CREATE VIEW stage_correction_now AS
+SELECT c.station, strftime('%Y-%m-%dT%H:%M:%fZ', c.from_ms / 1000.0, 'unixepoch') AS "from",
+       strftime('%Y-%m-%dT%H:%M:%fZ', c.until_ms / 1000.0, 'unixepoch') AS until,
+       c.add_at_from_ticks / 1e8 AS add_at_from_m, c.add_at_until_ticks / 1e8 AS add_at_until_m, c.remark,
+       c.version, c.act, c.file, c.line
+FROM stage_correction c
+WHERE c.withdrawn = 0
+  AND c.version = (SELECT max(o.version) FROM stage_correction o
+                   WHERE o.station = c.station AND o.from_ms = c.from_ms AND o.until_ms = c.until_ms);
 
 -- Every reading of every piece: recorded = stage_value / 10^decimals in `unit`; NULL is missing.
 CREATE VIEW stage_recorded AS
 SELECT p.station, p.month, p.id AS piece, p.act, p.unit, p.decimals,
        CASE p.step_ms WHEN 0 THEN p.first_ms + json_extract(v.value, '$[0]') ELSE p.first_ms + p.step_ms * v.key END AS time_ms,
-       CASE p.step_ms WHEN 0 THEN json_extract(v.value, '$[1]') ELSE v.value END AS stage_value
+       CASE p.step_ms WHEN 0 THEN json_extract(v.value, '$[1]') ELSE v.value END AS stage_value,
+       (SELECT json_extract(q.value, '$[1]') FROM json_each(p.quality_runs) q
+        WHERE json_extract(q.value, '$[0]') <= v.key ORDER BY q.key DESC LIMIT 1) AS quality,
+       (SELECT json_extract(l.value, '$[1]') FROM json_each(p.line_runs) l
+        WHERE json_extract(l.value, '$[0]') <= v.key ORDER BY l.key DESC LIMIT 1) AS file,
+       (SELECT json_extract(l.value, '$[2]') + v.key - json_extract(l.value, '$[0]') FROM json_each(p.line_runs) l
+        WHERE json_extract(l.value, '$[0]') <= v.key ORDER BY l.key DESC LIMIT 1) AS line
 FROM stage_piece p, json_each(p.stage_values) v;
 
 -- The readings in force: not spanned by a later piece.
 CREATE VIEW stage AS
 SELECT r.station, strftime('%Y-%m-%dT%H:%M:%fZ', r.time_ms / 1000.0, 'unixepoch') AS time, r.time_ms,
        CASE r.unit WHEN 'ft' THEN 0.3048 ELSE 1.0 END * r.stage_value / CAST('1e' || r.decimals AS REAL) AS stage_m,
-       r.piece, r.act
+       r.quality, r.file, r.line, r.piece, r.act
 FROM stage_recorded r
 WHERE NOT EXISTS (SELECT 1 FROM stage_piece p WHERE p.station = r.station AND p.month = r.month AND p.id > r.piece
                   AND r.time_ms BETWEEN p.span_first_ms AND p.span_last_ms);
 
--- The newest version of every gauging that was not withdrawn.
-CREATE VIEW gauging_now AS
-SELECT g.* FROM gauging g
-WHERE g.withdrawn = 0
-  AND g.version = (SELECT max(version) FROM gauging o WHERE o.station = g.station AND o.id = g.id);
-
 -- The periods in force.
 CREATE VIEW period_now AS
-SELECT p.* FROM period p
-WHERE p.edition = (SELECT max(number) FROM edition e WHERE e.station = p.station);
+SELECT p.station, p.edition, p.number, strftime('%Y-%m-%dT%H:%M:%fZ', p.from_ms / 1000.0, 'unixepoch') AS "from",
+       strftime('%Y-%m-%dT%H:%M:%fZ', p.until_ms / 1000.0, 'unixepoch') AS until, p.curve, p.no_curve,
+       p.blend_ms / 3600000.0 AS blend_hours, p.act
+FROM period p
+WHERE p.edition = (SELECT max(e.number) FROM edition e WHERE e.station = p.station);
+
+-- Every published figure, one a row.
+CREATE VIEW publication_value AS
+SELECT m.station, m.publication,
+       strftime('%Y-%m-%dT%H:%M:%fZ', CASE m.step_ms WHEN 0 THEN m.first_ms + json_extract(v.value, '$[0]')
+                ELSE m.first_ms + m.step_ms * v.key END / 1000.0, 'unixepoch') AS time,
+       CASE m.step_ms WHEN 0 THEN json_extract(v.value, '$[1]') ELSE v.value END
+         / CAST('1e' || p.decimals AS REAL) AS discharge_m3s,
+       json_extract(m.u95_tenth_pct, '$[' || v.key || ']') / 10.0 AS u95_pct,
+       (SELECT json_extract(q.value, '$[1]') FROM json_each(m.quality_runs) q
+        WHERE json_extract(q.value, '$[0]') <= v.key ORDER BY q.key DESC LIMIT 1) AS quality,
+       (SELECT json_extract(f.value, '$[1]') FROM json_each(m.flag_runs) f
+        WHERE json_extract(f.value, '$[0]') <= v.key ORDER BY f.key DESC LIMIT 1) AS flags,
+       (SELECT json_extract(c.value, '$[1]') FROM json_each(m.curve_runs) c
+        WHERE json_extract(c.value, '$[0]') <= v.key ORDER BY c.key DESC LIMIT 1) AS curve
+FROM publication_month m JOIN publication p ON p.station = m.station AND p.number = m.publication,
+     json_each(m.flow_values) v;
+
+-- The day means in force: of the newest publication that holds the day.
+CREATE VIEW published_day AS
+SELECT d.station, date(d.day * 86400, 'unixepoch') AS day, d.mean / CAST('1e' || p.decimals AS REAL) AS discharge_m3s,
+       d.u95_tenth_pct / 10.0 AS u95_pct, d.quality, d.flags, d.share, d.curves, d.publication
+FROM publication_day d JOIN publication p ON p.station = d.station AND p.number = d.publication
+WHERE d.publication = (SELECT max(o.publication) FROM publication_day o WHERE o.station = d.station AND o.day = d.day);

@@ -226,9 +226,11 @@ Findings overlap_findings(const std::string& path, const store::StageSeries& ser
     finding.file = path;
     finding.line = static_cast<std::size_t>(overlap.line);
     finding.column = 0;
-    finding.fault = fmt::format("station {} at {} is held as {}, given as {}", series.station,
-                                format_time(overlap.time, {}), reading_text(overlap.held, series),
-                                reading_text(overlap.given, series));
+    const bool value_differs = overlap.held != overlap.given;
+    finding.fault = fmt::format(
+        "station {} at {} is held as {}, given as {}", series.station, format_time(overlap.time, {}),
+        value_differs ? reading_text(overlap.held, series) : word(overlap.held_quality),
+        value_differs ? reading_text(overlap.given, series) : word(overlap.given_quality));
     finding.expected = "new times, or the same readings as held";
     finding.remedy = "to replace what the file spans take it in with --correct --reason TEXT";
     findings.push_back(std::move(finding));

@@ -1,6 +1,9 @@
 // Acts, settings, files: beginning and ending an act, and what is known of earlier ones.
 
+#include <sqlite3.h>
+
 #include <algorithm>
+#include <cassert>
 
 #include "store/book_impl.hpp"
 #include "store/canonical.hpp"
@@ -29,7 +32,11 @@ Act act_in(Query& query) {
   act.command = c.text();
   act.program = c.text();
   act.method = c.small();
-  act.tables = parse_tables(c.text());
+  try {
+    act.tables = parse_tables(c.text());
+  } catch (const StoreError& error) {
+    throw StoreError(error.kind(), "act " + std::to_string(act.number) + ": " + error.what());
+  }
   act.hash = c.text();
   return act;
 }
@@ -61,14 +68,6 @@ Instant time_after(const Last& last) {
 
 void require_text(const std::string& text, const char* what) {
   if (!is_utf8(text)) throw StoreError(Kind::refused, std::string(what) + " is not UTF-8");
-}
-
-void require_head(const ActHead& head) {
-  if (head.who.empty()) throw StoreError(Kind::refused, "an act needs the name of who does it");
-  require_text(head.who, "the name of who does it");
-  require_text(head.station, "the station");
-  require_text(head.reason, "the reason");
-  require_text(head.command, "the command");
 }
 
 FileRecord file_in(Query& query) {
@@ -104,7 +103,30 @@ const SettingField kSettings[] = {field<&Settings::longest_gap_minutes>("longest
                                   field<&Settings::estimate_above_gauged>("estimate_above_gauged"),
                                   field<&Settings::poor_above_lineage>("poor_above_lineage")};
 
+/// COMMIT; a row that points nowhere is named.
+void end_transaction(SQLite::Database& db) {
+  try {
+    db.exec("COMMIT");
+  } catch (const SQLite::Exception& error) {
+    if (error.getExtendedErrorCode() != SQLITE_CONSTRAINT_FOREIGNKEY) throw;
+    Query broken(db, "PRAGMA foreign_key_check");
+    std::string what = "a row";
+    if (broken.next()) what = "a row of " + broken.text(0) + " names a row of " + broken.text(2);
+    throw StoreError(Kind::refused, what + " that the book does not hold; nothing was stored");
+  }
+}
+
 }  // namespace
+
+void require_head(const ActHead& head) {
+  if (head.who.find_first_not_of(' ') == std::string::npos) {
+    throw StoreError(Kind::refused, "an act needs the name of who does it");
+  }
+  require_text(head.who, "the name of who does it");
+  require_text(head.station, "the station");
+  require_text(head.reason, "the reason");
+  require_text(head.command, "the command");
+}
 
 // ---- reading ----------------------------------------------------------------------------------------------
 
@@ -178,6 +200,7 @@ std::vector<FileRecord> Book::files(Known known) const {
 Writer Book::begin(const ActHead& head) {
   require_head(head);
   if (!impl_->writable) throw StoreError(Kind::refused, "the book was opened for reading only");
+  assert(!impl_->in_act);
   return guarded([&] {
     impl_->db.exec("BEGIN IMMEDIATE");
     try {
@@ -195,7 +218,9 @@ Writer::Writer(Writer&&) noexcept = default;
 Writer::~Writer() = default;
 
 Writer::Impl::~Impl() {
-  if (open) (void)book.db.tryExec("ROLLBACK");
+  if (!open) return;
+  (void)book.db.tryExec("ROLLBACK");
+  book.in_act = false;
 }
 
 std::int64_t Writer::act() const {
@@ -226,16 +251,16 @@ void Writer::add_settings(const Settings& settings) {
 Act Writer::commit() {
   return guarded([&] {
     SQLite::Database& db = impl_->db();
-    Act act{impl_->number,
-            impl_->time,
-            impl_->head.who,
-            impl_->head.station,
-            impl_->head.reason,
-            impl_->head.command,
-            program_version(),
-            kMethodVersion,
-            {},
-            {}};
+    const ActHead& head = impl_->head;
+    Act act;
+    act.number = impl_->number;
+    act.time = impl_->time;
+    act.who = head.who;
+    act.station = head.station;
+    act.reason = head.reason;
+    act.command = head.command;
+    act.program = program_version();
+    act.method = kMethodVersion;
     for (const TableShape& table : tables_of(db)) {
       ActTable written = digest_of(db, table, act.number);
       if (written.rows > 0) act.tables.push_back(std::move(written));
@@ -246,8 +271,9 @@ Act Writer::commit() {
     insert.put(act.number, to_ms(act.time), act.who, act.station, act.reason, act.command, act.program)
         .put(act.method, tables_json(act.tables), act.hash)
         .run();
-    db.exec("COMMIT");
+    end_transaction(db);
     impl_->open = false;
+    impl_->book.in_act = false;
     return act;
   });
 }

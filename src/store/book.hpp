@@ -214,12 +214,14 @@ struct StageTaken {
   std::int64_t merged = 0;  ///< months rewritten into one merged piece
 };
 
-/// A held reading that a new file contradicts.
+/// A held reading that a new file contradicts: by its value, or by a quality that it states.
 struct StageOverlap {
   std::int64_t line = 0;
   Instant time{};
   std::int64_t held = kMissing;  ///< ticks of 1e-8 m
   std::int64_t given = kMissing;
+  Quality held_quality = Quality::unchecked;
+  Quality given_quality = Quality::unchecked;
 };
 
 /// Appends rows of one act in one transaction. Without commit() everything is rolled back.
@@ -245,10 +247,12 @@ class Writer {
   void add(const Gauging& record, SourceLine source, bool correct = false, bool withdrawn = false);
   void add(const StageCorrection& record, SourceLine source, bool correct = false, bool withdrawn = false);
 
-  /// Readings of `series` that contradict held ones (a different value at a held time); empty when it may be
-  /// added.
+  /// Readings of `series` that contradict held ones: a different value at a held time, or the same with
+  /// another quality than held (`unchecked` states none). Empty when it may be added.
   [[nodiscard]] std::vector<StageOverlap> overlaps(const StageSeries& series, std::size_t most = 50) const;
-  /// Adds one piece per UTC month; repeated readings are skipped. With `correct` it replaces what it spans.
+  /// Adds one piece per UTC month, more where held readings lie between new ones; repeated readings are
+  /// skipped. With `correct` it replaces what it spans, quality too. Throws refused where overlaps() is not
+  /// empty and `correct` is false.
   StageTaken add_stage(const StageSeries& series, std::int64_t file, bool correct = false);
 
   /// Stores a proposal; gives it the station's next number, sets number and lineage in the returned copy.

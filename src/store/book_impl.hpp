@@ -16,11 +16,18 @@ struct Book::Impl {
   std::string path;
   mutable SQLite::Database db;
   bool writable;
+  bool in_act = false;  ///< a Writer is open
 };
 
+/// Throws refused where `head` cannot stand in the ledger.
+void require_head(const ActHead& head);
+
 struct Writer::Impl {
+  /// Inside a transaction that the writer ends.
   Impl(Book::Impl& of, ActHead given, std::int64_t act, Instant at)
-      : book(of), head(std::move(given)), number(act), time(at) {}
+      : book(of), head(std::move(given)), number(act), time(at) {
+    book.in_act = true;
+  }
   ~Impl();
   Impl(const Impl&) = delete;
   Impl& operator=(const Impl&) = delete;

@@ -128,11 +128,15 @@ std::string tables_json(const std::vector<ActTable>& tables) {
 }
 
 std::vector<ActTable> parse_tables(const std::string& json) {
-  std::vector<ActTable> tables;
-  for (const auto& table : nlohmann::json::parse(json)) {
-    tables.push_back({table.at("table"), table.at("rows"), table.at("sha256")});
+  try {
+    std::vector<ActTable> tables;
+    for (const auto& table : nlohmann::json::parse(json)) {
+      tables.push_back({table.at("table"), table.at("rows"), table.at("sha256")});
+    }
+    return tables;
+  } catch (const nlohmann::json::exception&) {
+    throw StoreError(StoreError::Kind::damaged, "its list of tables cannot be read");
   }
-  return tables;
 }
 
 std::string canonical_json(const Act& act) {
@@ -145,7 +149,11 @@ std::string canonical_json(const Act& act) {
                                {"tables", nlohmann::json::parse(tables_json(act.tables))},
                                {"time_ms", to_ms(act.time)},
                                {"who", act.who}};
-  return json.dump();
+  try {
+    return json.dump();
+  } catch (const nlohmann::json::exception&) {
+    throw StoreError(StoreError::Kind::damaged, "it holds a text that is not UTF-8");
+  }
 }
 
 std::string first_hash() {

@@ -44,10 +44,12 @@ void append_canonical(SQLite::Statement& row, std::string& text);
 /// with the table's name and a new line.
 [[nodiscard]] ActTable digest_of(const SQLite::Database& db, const TableShape& table, std::int64_t act);
 
-/// JSON of an act without its hash: keys in alphabetical order, no white space, UTF-8.
+/// JSON of an act without its hash: keys in alphabetical order, no white space, UTF-8. Throws StoreError
+/// damaged where a text of the act is not UTF-8.
 [[nodiscard]] std::string canonical_json(const Act& act);
 /// The JSON array of an act's tables, as it stands in the act's row and in canonical_json.
 [[nodiscard]] std::string tables_json(const std::vector<ActTable>& tables);
+/// Throws StoreError damaged.
 [[nodiscard]] std::vector<ActTable> parse_tables(const std::string& json);
 /// SHA-256 of the hash before it (64 zeros before the first) and canonical_json.
 [[nodiscard]] std::string chain_hash(const std::string& before, const Act& act);

@@ -1,9 +1,11 @@
 // Curves as stored: one row and its lists.
 
+#include <cmath>
 #include <nlohmann/json.hpp>
 
 #include "store/book_impl.hpp"
 #include "store/sql.hpp"
+#include "terms/finding.hpp"
 
 namespace scourbook::store {
 namespace {
@@ -85,11 +87,11 @@ RatingCurve curve_in(Columns& c) {
 
 ControlCoefficients control_in(Columns& c) {
   ControlCoefficients k;
-  k.kind = parse_control(c.text()).value();
+  k.kind = known(parse_control(c.text()), "control");
   k.name = c.text();
   k.cross_section = c.text();
   k.part = c.text();
-  k.law = parse_flow_law(c.text()).value();
+  k.law = known(parse_flow_law(c.text()), "flow law");
   for (double* real :
        {&k.velocity_scale, &k.velocity_exponent, &k.allowance_h0_m, &k.allowance_c, &k.reference_depth_m}) {
     *real = c.real();
@@ -226,15 +228,31 @@ void insert_list(const SQLite::Database& db, const RatingCurve& curve, std::int6
   }
 }
 
-/// JSON with every double as the shortest text that reads back as the same bits.
-std::string numbers_json(const std::vector<double>& numbers) {
-  for (const double number : numbers) {
-    if (number - number != 0) {
-      throw StoreError(StoreError::Kind::refused,
-                       "the covariance of a curve holds a figure that is no number");
-    }
+[[noreturn]] void refuse(const std::string& why) {
+  throw StoreError(StoreError::Kind::refused, why + "; nothing was stored");
+}
+
+/// JSON with every double as a text that reads back as the same bits.
+std::string covariance_json(const RatingCurve& curve) {
+  if (curve.covariance.size() != curve.unknowns.size() * curve.unknowns.size()) {
+    refuse("curve.covariance has " + std::to_string(curve.covariance.size()) + " figures for " +
+           std::to_string(curve.unknowns.size()) + " unknowns");
+  }
+  std::vector<double> numbers;
+  for (const double number : curve.covariance) {
+    if (!std::isfinite(number))
+      refuse("curve.covariance is " + std::to_string(number) + ", which is no figure");
+    numbers.push_back(number + 0.0);  // zero has no sign in a book
   }
   return nlohmann::json(numbers).dump();
+}
+
+/// A list of texts as JSON.
+std::string texts_json(const char* what, const std::vector<std::string>& texts) {
+  for (const std::string& text : texts) {
+    if (!is_utf8(text)) refuse(std::string(what) + " holds a text that is not UTF-8");
+  }
+  return nlohmann::json(texts).dump();
 }
 
 void insert_curve(const SQLite::Database& db, const RatingCurve& c, std::int64_t act) {
@@ -244,13 +262,22 @@ void insert_curve(const SQLite::Database& db, const RatingCurve& c, std::int64_t
       .put(c.until ? std::optional(to_ms(*c.until)) : std::nullopt)
       .put(c.takeover_level_m, c.survey_level_error_m, c.model_error, c.surveyed_top_m)
       .put(c.gauged_low_m3s, c.gauged_high_m3s, c.lineage_high_m3s, c.inferred, c.carried)
-      .put(nlohmann::json(c.unknowns).dump(), numbers_json(c.covariance), nlohmann::json(c.remarks).dump())
+      .put(texts_json("curve.unknowns", c.unknowns), covariance_json(c),
+           texts_json("curve.remarks", c.remarks))
       .run();
   insert_list(db, c, act, "curve_control", kControl, 31, c.controls);
   insert_list(db, c, act, "curve_reach", "reach, version", 2, c.reach);
   insert_list(db, c, act, "curve_band", "level_m, sd_ln_q", 2, c.bands);
   insert_list(db, c, act, "curve_gauging", kGauging, 10, c.gaugings);
   insert_list(db, c, act, "curve_diagnostic", kDiagnostic, 7, c.diagnostics);
+}
+
+/// A first curve begins a lineage; every other one is of its parent's.
+int lineage_of(const SQLite::Database& db, const std::string& station, int parent) {
+  Query query(db, "SELECT lineage FROM curve WHERE station = ? AND number = ?");
+  query.put(station, parent);
+  if (!query.next()) refuse(station + " has no curve " + std::to_string(parent) + " to descend from");
+  return query.small(0);
 }
 
 }  // namespace
@@ -288,13 +315,13 @@ std::int64_t Book::curve_act(const std::string& station, int number) const {
 
 RatingCurve Writer::add_curve(RatingCurve curve) {
   return guarded([&] {
-    Query number(impl_->db(), "SELECT coalesce(max(number), 0) + 1 FROM curve WHERE station = ?");
+    const SQLite::Database& db = impl_->db();
+    Query number(db, "SELECT coalesce(max(number), 0) + 1 FROM curve WHERE station = ?");
     number.put(curve.station);
     (void)number.next();
     curve.number = number.small(0);
-    // A first curve begins a lineage, and its scale was estimated in itself.
-    if (!curve.parent) curve.lineage = curve.number;
-    insert_curve(impl_->db(), curve, impl_->number);
+    curve.lineage = curve.parent ? lineage_of(db, curve.station, *curve.parent) : curve.number;
+    insert_curve(db, curve, impl_->number);
     return curve;
   });
 }

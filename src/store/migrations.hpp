@@ -21,7 +21,10 @@ struct Migration {
 /// "Scbk": what SQLite's application_id of a book is.
 inline constexpr int kApplicationId = 0x5363626b;
 
-/// Brings the schema to the newest, each migration in a transaction of its own. Throws SQLite::Exception.
+/// Runs the migrations that the book has not seen, inside a transaction of the caller. Throws
+/// SQLite::Exception.
+void lay_schema(SQLite::Database& db);
+/// The same in a transaction of its own: all of them or none.
 void migrate(SQLite::Database& db);
 
 }  // namespace scourbook::store

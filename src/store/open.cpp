@@ -1,17 +1,14 @@
-// Opening and creating books: what is no book, what is too new, how the connection is set up.
+// Opening and creating books: how the connection is set up, what is too old or too new.
 
 #include <spdlog/spdlog.h>
 #include <sqlite3.h>
-#include <sys/statfs.h>
 
-#include <array>
-#include <cstdio>
 #include <filesystem>
-#include <fstream>
 
 #include "store/book_impl.hpp"
 #include "store/migrations.hpp"
 #include "store/outside.hpp"
+#include "store/place.hpp"
 #include "store/sql.hpp"
 
 namespace scourbook::store {
@@ -20,57 +17,48 @@ namespace {
 namespace fs = std::filesystem;
 using Kind = StoreError::Kind;
 
-constexpr int kWaitMs = 10'000;
-
-[[noreturn]] void no_book(const std::string& path, const std::string& why) {
-  throw StoreError(Kind::not_a_book, path + " is no book: " + why);
-}
-
-/// Refuses what cannot be a book before SQLite sees it, so that the message says what it is.
-void look_at(const std::string& path) {
-  std::error_code fault;
-  const auto status = fs::status(path, fault);
-  if (!fs::exists(status)) no_book(path, "there is no such file; scourbook new makes a book");
-  if (fs::is_directory(status)) no_book(path, "it is a folder");
-  std::ifstream in(path, std::ios::binary);
-  if (!in) throw StoreError(Kind::io, path + " cannot be read; look at the rights of the file");
-  std::array<char, 16> head{};
-  in.read(head.data(), head.size());
-  if (in.gcount() == 0) no_book(path, "it is empty");
-  if (std::string(head.data(), static_cast<std::size_t>(in.gcount())) !=
-      std::string("SQLite format 3\0", 16)) {
-    no_book(path, "it is a file of another kind");
-  }
-}
-
-void warn_on_network(const std::string& path) {
-  constexpr long kNfs = 0x6969, kSmb = 0x517b, kCifs = 0xff534d42, kSmb2 = 0xfe534d42;
-  struct statfs info {};
-  if (statfs(path.c_str(), &info) != 0) return;
-  const auto type = static_cast<long>(info.f_type) & 0xffffffffL;
-  if (type == kNfs || type == kSmb || type == kCifs || type == kSmb2) {
-    spdlog::warn(
-        "{} lies on a network file system, where locks cannot be relied on; keep books on a local disk",
-        path);
+/// Like guarded(), and the message begins with the path.
+template <class Work>
+auto guarded_at(const std::string& path, Work work) -> decltype(work()) {
+  try {
+    return work();
+  } catch (const SQLite::Exception& error) {
+    const StoreError said = translated(error);
+    throw StoreError(said.kind(), path + ": " + said.what());
   }
 }
 
 void set_up(SQLite::Database& db) {
   sqlite3_extended_result_codes(db.getHandle(), 1);
-  db.setBusyTimeout(kWaitMs);
+  db.setBusyTimeout(static_cast<int>(wait_for_lock().count()));
   db.exec("PRAGMA foreign_keys = ON");
   db.exec("PRAGMA recursive_triggers = ON");
   db.exec("PRAGMA cache_size = -65536");
   db.exec("PRAGMA temp_store = MEMORY");
 }
 
+void set_up_to_write(SQLite::Database& db) {
+  set_up(db);
+  (void)db.execAndGet("PRAGMA journal_mode = WAL");
+  db.exec("PRAGMA synchronous = FULL");
+}
+
+int schema_of(SQLite::Database& db) {
+  return db.execAndGet("PRAGMA user_version").getInt();
+}
+
 void require_book(SQLite::Database& db, const std::string& path) {
-  if (db.execAndGet("PRAGMA application_id").getInt() != kApplicationId) {
-    no_book(path, "it is a database of another program");
+  const auto no_book = [&](const char* why) {
+    throw StoreError(Kind::not_a_book, path + " is no book: " + why);
+  };
+  if (db.execAndGet("SELECT count(*) FROM sqlite_master").getInt() == 0) {
+    no_book("it is an empty database; if making a book was cut off, remove it and make the book again");
   }
-  const int schema = db.execAndGet("PRAGMA user_version").getInt();
-  if (schema > newest_schema()) {
-    throw StoreError(Kind::newer, path + " has schema " + std::to_string(schema) + "; this program (" +
+  if (db.execAndGet("PRAGMA application_id").getInt() != kApplicationId) {
+    no_book("it is a database of another program");
+  }
+  if (schema_of(db) > newest_schema()) {
+    throw StoreError(Kind::newer, path + " has schema " + std::to_string(schema_of(db)) + "; this program (" +
                                       program_version() + ") knows schemas up to " +
                                       std::to_string(newest_schema()) +
                                       ": use the newer program that wrote it");
@@ -79,11 +67,12 @@ void require_book(SQLite::Database& db, const std::string& path) {
 
 SQLite::Database connect(const std::string& path, int flags) {
   const char* system = file_system_name();
-  return SQLite::Database(path, flags, kWaitMs, system == nullptr ? std::string() : std::string(system));
+  return SQLite::Database(path, flags, static_cast<int>(wait_for_lock().count()),
+                          system == nullptr ? std::string() : std::string(system));
 }
 
 /// A book in a folder that cannot be written has no place for the files beside it; without pending writes it
-/// can be read as it lies there.
+/// can be read as it lies there, without locks.
 SQLite::Database connect_unchanging(const std::string& path) {
   std::error_code fault;
   const auto pending = fs::file_size(path + "-wal", fault);
@@ -91,17 +80,9 @@ SQLite::Database connect_unchanging(const std::string& path) {
     throw StoreError(Kind::io, path + " has writes pending in " + path +
                                    "-wal and its folder cannot be written; copy both to another folder");
   }
-  std::string escaped;
-  for (char c : fs::absolute(path).string()) {
-    if (c == '%' || c == '?' || c == '#') {
-      char code[4];
-      std::snprintf(code, sizeof code, "%%%02x", static_cast<unsigned char>(c));
-      escaped += code;
-    } else {
-      escaped += c;
-    }
-  }
-  return SQLite::Database("file:" + escaped + "?immutable=1", SQLite::OPEN_READONLY | SQLite::OPEN_URI);
+  spdlog::warn("the folder of {} cannot be written: it is read without locks, so nobody may write to it now",
+               path);
+  return SQLite::Database(unchanging_uri(path), SQLite::OPEN_READONLY | SQLite::OPEN_URI);
 }
 
 SQLite::Database connect_to_read(const std::string& path) {
@@ -119,9 +100,21 @@ SQLite::Database connect_to_read(const std::string& path) {
   return db;
 }
 
-void remove_files(const std::string& path) {
-  std::error_code ignored;
-  for (const char* ending : {"", "-wal", "-shm", "-journal"}) fs::remove(path + ending, ignored);
+void require_writable(SQLite::Database& db, const std::string& path) {
+  if (sqlite3_db_readonly(db.getHandle(), "main") == 0) return;
+  throw StoreError(Kind::io, path + " cannot be written; look at the rights of the file and its folder");
+}
+
+/// What stands in the way of a new file, said plainly.
+void require_free(const std::string& path) {
+  std::error_code fault;
+  if (fs::exists(path, fault)) {
+    throw StoreError(Kind::refused, path + " exists already; nothing was changed");
+  }
+  const fs::path folder = fs::absolute(path, fault).parent_path();
+  if (!fs::is_directory(folder, fault)) {
+    throw StoreError(Kind::io, path + " cannot be made: there is no folder " + folder.string());
+  }
 }
 
 }  // namespace
@@ -136,11 +129,11 @@ Book& Book::operator=(Book&&) noexcept = default;
 Book::~Book() = default;
 
 Book Book::open_to_read(const std::string& path) {
-  look_at(path);
-  return guarded([&] {
+  require_likely_book(path);
+  return guarded_at(path, [&] {
     SQLite::Database db = connect_to_read(path);
     require_book(db, path);
-    const int schema = db.execAndGet("PRAGMA user_version").getInt();
+    const int schema = schema_of(db);
     if (schema < newest_schema()) {
       throw StoreError(Kind::refused, path + " has the older schema " + std::to_string(schema) +
                                           "; any writing command brings it to schema " +
@@ -151,34 +144,35 @@ Book Book::open_to_read(const std::string& path) {
 }
 
 Book Book::open_to_write(const std::string& path) {
-  look_at(path);
+  require_likely_book(path);
   warn_on_network(path);
-  return guarded([&] {
+  return guarded_at(path, [&] {
     SQLite::Database db = connect(path, SQLite::OPEN_READWRITE);
     set_up(db);
     require_book(db, path);
-    db.exec("PRAGMA synchronous = FULL");
+    require_writable(db, path);
+    set_up_to_write(db);
     migrate(db);
     return Book(std::make_unique<Impl>(path, std::move(db), true));
   });
 }
 
 Book Book::create(const std::string& path, const ActHead& head, const Settings& settings) {
-  std::error_code fault;
-  if (fs::exists(path, fault)) throw StoreError(Kind::refused, path + " exists already; nothing was changed");
+  require_head(head);
+  require_free(path);
   try {
-    return guarded([&] {
+    return guarded_at(path, [&] {
       SQLite::Database db = connect(path, SQLite::OPEN_READWRITE | SQLite::OPEN_CREATE);
-      set_up(db);
-      (void)db.execAndGet("PRAGMA journal_mode = WAL");
-      db.exec("PRAGMA synchronous = FULL");
-      migrate(db);
+      set_up_to_write(db);
       warn_on_network(path);
-      Book book(std::make_unique<Impl>(path, std::move(db), true));
-      Writer writer = book.begin(head);
+      auto impl = std::make_unique<Impl>(path, std::move(db), true);
+      // Schema and first act in one transaction: a file is a whole book or none.
+      impl->db.exec("BEGIN IMMEDIATE");
+      lay_schema(impl->db);
+      Writer writer(std::make_unique<Writer::Impl>(*impl, head, 1, now()));
       writer.add_settings(settings);
       (void)writer.commit();
-      return book;
+      return Book(std::move(impl));
     });
   } catch (...) {
     remove_files(path);

@@ -15,6 +15,8 @@ std::function<Instant()>& clock_in_use() {
   return clock;
 }
 
+Millis wait_in_use = std::chrono::seconds(10);
+
 constexpr const char* kName = "scourbook-failing";
 bool in_use = false;
 
@@ -199,6 +201,13 @@ void use_clock(std::function<Instant()> clock) {
 Instant now() {
   if (clock_in_use()) return clock_in_use()();
   return std::chrono::time_point_cast<Millis>(std::chrono::system_clock::now());
+}
+
+void use_wait(Millis wait) {
+  wait_in_use = wait;
+}
+Millis wait_for_lock() {
+  return wait_in_use;
 }
 
 FailingFileSystem::FailingFileSystem() {

@@ -1,5 +1,6 @@
 #pragma once
-// Seams to the world outside, for tests: the clock, and the file system under SQLite. Not used unless set.
+// Seams to the world outside, for tests: the clock, the wait for a lock, and the file system under SQLite.
+// Not used unless set.
 
 #include <cstdint>
 #include <functional>
@@ -12,6 +13,10 @@ namespace scourbook::store {
 /// Replaces the clock that acts are timed by; an empty function brings the system's clock back.
 void use_clock(std::function<Instant()> clock);
 [[nodiscard]] Instant now();
+
+/// How long one waits for another who is writing: 10 s unless set.
+void use_wait(Millis wait);
+[[nodiscard]] Millis wait_for_lock();
 
 /// A file system on which the power fails. It passes everything on to the real one and counts what changes
 /// files: writes, truncations, syncs, deletions. At operation `fail_at` (from 1) the power goes: what was

@@ -25,6 +25,7 @@ struct Piece {
   std::string station;
   int month = 0;
   bool merged = false;
+  std::int64_t file = 0;           ///< that it came from; of its first reading where merged
   std::int64_t span_first_ms = 0;  ///< what it spans, both ends included: here it decides
   std::int64_t span_last_ms = 0;
   std::int64_t first_ms = 0;
@@ -41,7 +42,8 @@ struct Piece {
 [[nodiscard]] const char* word(StageUnit unit);  ///< "m", "ft"
 [[nodiscard]] StageUnit parse_unit(const std::string& text);
 
-/// Fills first_ms, step_ms, count and the three texts. `readings` by rising time; may be empty.
+/// Fills first_ms, step_ms, count and the three texts. `readings` by rising time; may be empty, then only the
+/// span speaks: nothing is held there.
 void encode(const std::vector<PieceReading>& readings, Piece& piece);
 
 /// Times and values of a piece. Throws StoreError damaged where its text is none that encode() makes.
@@ -56,13 +58,5 @@ struct PieceValues {
 
 /// What Piece::sha256 must be.
 [[nodiscard]] std::string digest_of(const Piece& piece);
-
-/// Runs of equal items as JSON [[index, item],...], and back. Items are integers.
-[[nodiscard]] std::string runs_json(const std::vector<std::int64_t>& items);
-/// Throws StoreError damaged.
-[[nodiscard]] std::vector<std::int64_t> parse_runs(const std::string& json, std::size_t count);
-/// An array of integers and nulls (kMissing) as JSON, and back. Throws StoreError damaged.
-[[nodiscard]] std::string integers_json(const std::vector<std::int64_t>& items);
-[[nodiscard]] std::vector<std::int64_t> parse_integers(const std::string& json);
 
 }  // namespace scourbook::store

@@ -1,12 +1,13 @@
 // Publications as stored: figures of months as lists, day means as rows.
 
-#include <limits>
+#include <cassert>
 #include <nlohmann/json.hpp>
 
 #include "store/book_impl.hpp"
 #include "store/canonical.hpp"
-#include "store/piece.hpp"
+#include "store/publication_rows.hpp"
 #include "store/sql.hpp"
+#include "store/value_text.hpp"
 
 namespace scourbook::store {
 namespace {
@@ -56,50 +57,32 @@ std::vector<Item> narrowed(const std::vector<std::int64_t>& numbers) {
   return items;
 }
 
-/// A month's lists as they are stored.
-struct MonthText {
-  std::string times, values, u95, flags, quality, curve;
-};
-
-/// Times as milliseconds after the one before, the first after 1970: a regular record stays small.
-std::string times_json(const std::vector<std::int64_t>& times) {
-  std::vector<std::int64_t> steps;
-  steps.reserve(times.size());
-  std::int64_t before = 0;
-  for (const std::int64_t time : times) {
-    steps.push_back(time - before);
-    before = time;
+void require_equal_lengths(const PublishedMonth& m) {
+  for (std::size_t length :
+       {m.value.size(), m.u95_tenth_pct.size(), m.flags.size(), m.quality.size(), m.curve.size()}) {
+    assert(length == m.time_ms.size());
+    (void)length;
   }
-  return runs_json(steps);
-}
-
-std::vector<std::int64_t> parse_times(const std::string& json, std::size_t count) {
-  auto times = parse_runs(json, count);
-  for (std::size_t i = 1; i < times.size(); ++i) times[i] += times[i - 1];
-  return times;
-}
-
-MonthText text_of(const PublishedMonth& m) {
-  return {times_json(m.time_ms),     integers_json(with_gaps(m.value)), runs_json(whole(m.u95_tenth_pct)),
-          runs_json(whole(m.flags)), runs_json(whole(m.quality)),       runs_json(whole(m.curve))};
 }
 
 PublishedMonth month_in(Query& query) {
   Columns c(query);
   PublishedMonth m;
   m.month.number = c.small();
-  const auto count = static_cast<std::size_t>(c.integer());
-  m.time_ms = parse_times(c.text(), count);
-  for (const std::int64_t value : parse_integers(c.text())) {
+  const std::int64_t count = c.integer(), first_ms = c.integer(), step_ms = c.integer();
+  TimedValues timed = parse_values(c.text(), first_ms, step_ms);
+  m.time_ms = std::move(timed.time_ms);
+  for (const std::int64_t value : timed.value) {
     m.value.push_back(value == kMissing ? std::nullopt : std::optional(value));
   }
-  if (m.value.size() != count) {
+  const std::size_t held = m.value.size();
+  m.u95_tenth_pct = parse_integers(c.text());
+  m.flags = narrowed<Flags>(parse_runs(c.text(), held));
+  m.quality = parse_quality_runs(c.text(), held);
+  m.curve = narrowed<int>(parse_runs(c.text(), held));
+  if (static_cast<std::int64_t>(held) != count || m.u95_tenth_pct.size() != held) {
     throw StoreError(StoreError::Kind::damaged, "a published month holds another number of figures");
   }
-  m.u95_tenth_pct = parse_runs(c.text(), count);
-  m.flags = narrowed<Flags>(parse_runs(c.text(), count));
-  m.quality = narrowed<Quality>(parse_runs(c.text(), count));
-  m.curve = narrowed<int>(parse_runs(c.text(), count));
   return m;
 }
 
@@ -110,7 +93,7 @@ PublishedDay day_in(Query& query) {
   day.mean = c.maybe_integer();
   day.u95_tenth_pct = c.maybe_integer();
   day.flags = static_cast<Flags>(c.integer());
-  day.quality = parse_quality(c.text()).value();
+  day.quality = known(parse_quality(c.text()), "quality");
   day.share = c.real();
   try {
     day.curves = nlohmann::json::parse(c.text()).get<std::vector<int>>();
@@ -121,38 +104,20 @@ PublishedDay day_in(Query& query) {
 }
 
 constexpr const char* kMonth =
-    "month, count, times_ms, flow_values, u95_tenth_pct, flag_runs, quality_runs, curve_runs";
+    "month, count, first_ms, step_ms, flow_values, u95_tenth_pct, flag_runs, quality_runs, curve_runs";
 constexpr const char* kDay = "day, mean, u95_tenth_pct, flags, quality, share, curves";
-
-/// The rows' own canonical text, months then days: what Publication::sha256 is made over.
-std::string figures_digest(const SQLite::Database& db, const Publication& p) {
-  Sha256 digest;
-  const std::pair<const char*, const char*> tables[] = {{"publication_month", "month"},
-                                                        {"publication_day", "day"}};
-  for (const auto& [table, key] : tables) {
-    digest.add(std::string(table) + "\n");
-    Query rows(db, std::string("SELECT ") + (table == tables[0].first ? kMonth : kDay) + " FROM " + table +
-                       " WHERE station = ? AND publication = ? ORDER BY " + key);
-    rows.put(p.station, p.number);
-    std::string text;
-    while (rows.next()) {
-      text.clear();
-      append_canonical(rows.statement(), text);
-      digest.add(text);
-    }
-  }
-  return digest.hex();
-}
 
 void insert_months(const SQLite::Database& db, const Publication& p) {
   Query insert(db, std::string("INSERT INTO publication_month (station, publication, act, ") + kMonth +
-                       ") VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)");
+                       ") VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)");
   for (const PublishedMonth& month : p.months) {
-    const MonthText text = text_of(month);
+    require_equal_lengths(month);
+    const ValueText text = values_text(month.time_ms, with_gaps(month.value));
     insert.again();
     insert
         .put(p.station, p.number, p.act, month.month.number, static_cast<std::int64_t>(month.time_ms.size()))
-        .put(text.times, text.values, text.u95, text.flags, text.quality, text.curve)
+        .put(text.first_ms, text.step_ms, text.json, integers_json(month.u95_tenth_pct))
+        .put(runs_json(whole(month.flags)), quality_runs_json(month.quality), runs_json(whole(month.curve)))
         .run();
   }
 }
@@ -170,6 +135,25 @@ void insert_days(const SQLite::Database& db, const Publication& p) {
 }
 
 }  // namespace
+
+std::string figures_digest(const SQLite::Database& db, const std::string& station, int publication) {
+  Sha256 digest;
+  const std::pair<const char*, const char*> tables[] = {{"publication_month", "month"},
+                                                        {"publication_day", "day"}};
+  for (const auto& [table, key] : tables) {
+    digest.add(std::string(table) + "\n");
+    Query rows(db, std::string("SELECT ") + (table == tables[0].first ? kMonth : kDay) + " FROM " + table +
+                       " WHERE station = ? AND publication = ? ORDER BY " + key);
+    rows.put(station, publication);
+    std::string text;
+    while (rows.next()) {
+      text.clear();
+      append_canonical(rows.statement(), text);
+      digest.add(text);
+    }
+  }
+  return digest.hex();
+}
 
 std::vector<Publication> Book::publications(const std::string& station, Known known) const {
   return guarded([&] {
@@ -210,7 +194,7 @@ Publication Writer::add_publication(Publication p) {
     p.act = impl_->number;
     insert_months(db, p);
     insert_days(db, p);
-    p.sha256 = figures_digest(db, p);
+    p.sha256 = figures_digest(db, p.station, p.number);
     Query insert(db,
                  "INSERT INTO publication (station, number, act, replay, from_ms, until_ms, decimals, title, "
                  "note, sha256) "

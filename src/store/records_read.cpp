@@ -90,10 +90,10 @@ ReachRow reach_in(Columns& c) {
   ReachRow row;
   row.station = c.text();
   row.valid_from = from_ms(c.integer());
-  row.control = parse_control(c.text()).value();
+  row.control = known(parse_control(c.text()), "control");
   row.cross_section = c.text();
   row.part = c.text();
-  row.law = parse_flow_law(c.text()).value();
+  row.law = known(parse_flow_law(c.text()), "flow law");
   row.slope = c.maybe_real();
   row.roughness_n = c.maybe_real();
   row.chezy_c = c.maybe_real();
@@ -182,7 +182,7 @@ Gauging gauging_in(Columns& c) {
   g.area_m2 = c.maybe_real();
   g.width_m = c.maybe_real();
   g.velocity_ms = c.maybe_real();
-  g.quality = parse_quality(c.text()).value();
+  g.quality = known(parse_quality(c.text()), "quality");
   g.remark = c.text();
   return g;
 }

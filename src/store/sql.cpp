@@ -4,12 +4,36 @@
 
 #include <cmath>
 
+#include "terms/finding.hpp"
+
 namespace scourbook::store {
+
+std::string Query::target() const {
+  // Our own text: "INSERT INTO table (a, b, c) VALUES ...".
+  const std::string sql = statement_.getQuery();
+  const std::string into = "INSERT INTO ";
+  const auto open = sql.find(" ("), close = sql.find(')');
+  if (sql.rfind(into, 0) != 0 || open > close) return "parameter " + std::to_string(next_);
+  const std::string table = sql.substr(into.size(), open - into.size());
+  std::size_t from = open + 2;
+  for (int i = 1; i < next_; ++i) from = sql.find(", ", from) + 2;
+  return table + "." + sql.substr(from, sql.find_first_of(",)", from) - from);
+}
 
 Query& Query::put(double value) {
   if (!std::isfinite(value)) {
-    throw StoreError(StoreError::Kind::refused, "a figure that is no number (" + std::to_string(value) +
-                                                    ") may not enter the book: " + statement_.getQuery());
+    throw StoreError(StoreError::Kind::refused,
+                     target() + " is " + std::to_string(value) + ", which is no figure; nothing was stored");
+  }
+  // SQLite does not keep the sign of a negative zero; adding zero takes it off here already.
+  statement_.bind(next_++, value + 0.0);
+  return *this;
+}
+
+Query& Query::put(const std::string& value) {
+  if (!is_utf8(value) || value.find('\0') != std::string::npos) {
+    throw StoreError(StoreError::Kind::refused,
+                     target() + " is a text that is not UTF-8, or holds a NUL; nothing was stored");
   }
   statement_.bind(next_++, value);
   return *this;

@@ -25,6 +25,16 @@ auto guarded(Work work) -> decltype(work()) {
   }
 }
 
+/// What a stored word means; throws damaged where it means nothing.
+template <class Value>
+[[nodiscard]] Value known(const std::optional<Value>& parsed, const char* what) {
+  if (!parsed) {
+    throw StoreError(StoreError::Kind::damaged,
+                     std::string("the book holds an unknown ") + what + "; scourbook check names the row");
+  }
+  return *parsed;
+}
+
 /// One statement: values bound in order, then rows read by column number from 0.
 class Query {
  public:
@@ -33,9 +43,10 @@ class Query {
   Query& put(std::int64_t value) { return statement_.bind(next_++, value), *this; }
   Query& put(int value) { return put(static_cast<std::int64_t>(value)); }
   Query& put(bool value) { return put(static_cast<std::int64_t>(value)); }
-  /// Throws refused for NaN and infinity: they never enter a book.
+  /// Throws refused for NaN and infinity, naming the column: they never enter a book. Zero has no sign in it.
   Query& put(double value);
-  Query& put(const std::string& value) { return statement_.bind(next_++, value), *this; }
+  /// Throws refused where it is not UTF-8 or holds a NUL: other tools would read another text.
+  Query& put(const std::string& value);
   Query& put(std::string_view value) { return put(std::string(value)); }
   Query& put(const char* value) { return put(std::string(value)); }
   Query& put(const std::optional<std::int64_t>& value);
@@ -73,6 +84,8 @@ class Query {
 
  private:
   Query& put_null();
+  /// "curve.level_m": what the next value goes into.
+  [[nodiscard]] std::string target() const;
 
   SQLite::Statement statement_;
   int next_ = 1;

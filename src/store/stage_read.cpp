@@ -111,17 +111,14 @@ std::optional<std::pair<Instant, Instant>> Book::stage_span(const std::string& s
 std::optional<ReadingOrigin> Book::reading_origin(const std::string& station, Instant time,
                                                   Known known) const {
   return guarded([&]() -> std::optional<ReadingOrigin> {
-    const int month = utc_month_of(time).number;
-    for (const Piece& piece : pieces_of(impl_->db, station, month, known.act)) {
-      if (to_ms(time) < piece.span_first_ms || to_ms(time) > piece.span_last_ms) continue;
-      auto origin = origin_in(piece, time);
-      if (!origin) return {};
-      // A merged piece is of a later act than the readings in it.
-      const auto from = file(origin->file);
-      origin->act = from ? from->act : piece.act;
-      return origin;
-    }
-    return {};
+    const auto piece = piece_at(impl_->db, station, time, known.act);
+    if (!piece) return {};
+    auto origin = origin_in(*piece, time);
+    if (!origin) return {};
+    // A merged piece is of a later act than the readings in it.
+    const auto from = file(origin->file);
+    origin->act = from ? from->act : piece->act;
+    return origin;
   });
 }
 

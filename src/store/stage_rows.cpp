@@ -9,8 +9,14 @@ namespace scourbook::store {
 namespace {
 
 constexpr const char* kColumns =
-    "id, act, station, month, merged, span_first_ms, span_last_ms, first_ms, step_ms, count, unit, decimals, "
+    "id, act, station, month, merged, file, span_first_ms, span_last_ms, first_ms, step_ms, count, unit, "
+    "decimals, "
     "stage_values, quality_runs, line_runs, sha256";
+
+std::string of_month() {
+  return std::string("SELECT ") + kColumns +
+         " FROM stage_piece WHERE station = ? AND month = ? AND act <= ? ORDER BY id DESC";
+}
 
 Piece piece_in(Query& query) {
   Columns c(query);
@@ -20,6 +26,7 @@ Piece piece_in(Query& query) {
   p.station = c.text();
   p.month = c.small();
   p.merged = c.flag();
+  p.file = c.integer();
   p.span_first_ms = c.integer();
   p.span_last_ms = c.integer();
   p.first_ms = c.integer();
@@ -27,6 +34,10 @@ Piece piece_in(Query& query) {
   p.count = c.integer();
   p.unit = parse_unit(c.text());
   p.decimals = c.small();
+  if (p.decimals < 0 || p.decimals > 8 || p.step_ms < 0) {
+    throw StoreError(StoreError::Kind::damaged,
+                     "stage piece " + std::to_string(p.id) + ": its decimals or step cannot be");
+  }
   p.values = c.text();
   p.quality_runs = c.text();
   p.line_runs = c.text();
@@ -37,7 +48,10 @@ Piece piece_in(Query& query) {
 /// Spans that later pieces have taken: disjoint, both ends included.
 class Taken {
  public:
-  [[nodiscard]] bool empty() const { return spans_.empty(); }
+  [[nodiscard]] bool touches(std::int64_t first, std::int64_t last) const {
+    return std::any_of(spans_.begin(), spans_.end(),
+                       [&](const auto& s) { return s.first <= last && first <= s.second; });
+  }
   [[nodiscard]] bool holds(std::int64_t t) const {
     return std::any_of(spans_.begin(), spans_.end(),
                        [&](const auto& s) { return s.first <= t && t <= s.second; });
@@ -65,7 +79,7 @@ class Taken {
 };
 
 PieceValues not_taken(PieceValues values, const Taken& taken) {
-  if (taken.empty()) return values;
+  if (values.time_ms.empty() || !taken.touches(values.time_ms.front(), values.time_ms.back())) return values;
   PieceValues kept;
   for (std::size_t i = 0; i < values.time_ms.size(); ++i) {
     if (taken.holds(values.time_ms[i])) continue;
@@ -76,24 +90,37 @@ PieceValues not_taken(PieceValues values, const Taken& taken) {
   return kept;
 }
 
+constexpr int kSpanFirst = 6, kSpanLast = 7;  ///< places in kColumns
+
 }  // namespace
 
-std::vector<Piece> pieces_of(const SQLite::Database& db, const std::string& station, int month,
-                             std::int64_t known) {
-  Query query(db, std::string("SELECT ") + kColumns +
-                      " FROM stage_piece WHERE station = ? AND month = ? AND act <= ? ORDER BY id DESC");
-  query.put(station, month, known);
-  std::vector<Piece> pieces;
-  while (query.next()) pieces.push_back(piece_in(query));
-  return pieces;
+void for_each_piece(const SQLite::Database& db, const std::function<void(const Piece&)>& work) {
+  Query query(db, std::string("SELECT ") + kColumns + " FROM stage_piece ORDER BY id");
+  while (query.next()) work(piece_in(query));
+}
+
+std::optional<Piece> piece_at(const SQLite::Database& db, const std::string& station, Instant time,
+                              std::int64_t known) {
+  Query query(db, of_month());
+  query.put(station, utc_month_of(time).number, known);
+  while (query.next()) {
+    if (query.integer(kSpanFirst) <= to_ms(time) && to_ms(time) <= query.integer(kSpanLast)) {
+      return piece_in(query);
+    }
+  }
+  return {};
 }
 
 std::vector<InForce> in_force(const SQLite::Database& db, const std::string& station, int month,
                               std::int64_t known) {
   std::vector<InForce> result;
   Taken taken;
-  for (Piece& piece : pieces_of(db, station, month, known)) {
-    if (taken.holds_all(piece.span_first_ms, piece.span_last_ms)) continue;
+  Query query(db, of_month());
+  query.put(station, month, known);
+  while (query.next()) {
+    // The lists of a piece that decides nothing any more are not even read from the file.
+    if (taken.holds_all(query.integer(kSpanFirst), query.integer(kSpanLast))) continue;
+    Piece piece = piece_in(query);
     PieceValues values = not_taken(decode(piece), taken);
     taken.add(piece.span_first_ms, piece.span_last_ms);
     result.push_back({std::move(piece), std::move(values)});
@@ -107,8 +134,8 @@ void insert_piece(SQLite::Database& db, Piece& piece) {
   piece.id = id.integer(0);
   piece.sha256 = digest_of(piece);
   Query insert(db, std::string("INSERT INTO stage_piece (") + kColumns +
-                       ") VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)");
-  insert.put(piece.id, piece.act, piece.station, piece.month, piece.merged)
+                       ") VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)");
+  insert.put(piece.id, piece.act, piece.station, piece.month, piece.merged, piece.file)
       .put(piece.span_first_ms, piece.span_last_ms, piece.first_ms, piece.step_ms, piece.count)
       .put(word(piece.unit), piece.decimals, piece.values, piece.quality_runs, piece.line_runs, piece.sha256)
       .run();

@@ -1,8 +1,8 @@
 // Appending stage: what repeats, what contradicts, and pieces of what is new.
 
 #include <algorithm>
+#include <cassert>
 #include <map>
-#include <set>
 
 #include "store/book_impl.hpp"
 #include "store/sql.hpp"
@@ -16,33 +16,63 @@ using Kind = StoreError::Kind;
 /// A month with more pieces than this is merged when it has ended.
 constexpr int kMostPieces = 32;
 
-/// Held values of one month by time, in ticks.
+struct HeldReading {
+  std::int64_t time_ms = 0;
+  std::int64_t ticks = kMissing;
+  Quality quality = Quality::unchecked;
+};
+
+/// Readings in force of one month, by time.
 class HeldMonth {
  public:
   HeldMonth(const SQLite::Database& db, const std::string& station, int month) {
     for (const InForce& held : in_force(db, station, month, INT64_MAX)) {
-      for (std::size_t i = 0; i < held.values.time_ms.size(); ++i) {
-        ticks_[held.values.time_ms[i]] = ticks_of(held.values.value[i], held.piece.unit, held.piece.decimals);
+      const PieceValues& values = held.values;
+      for (std::size_t i = 0; i < values.time_ms.size(); ++i) {
+        const std::int64_t ticks = ticks_of(values.value[i], held.piece.unit, held.piece.decimals);
+        readings_.push_back({values.time_ms[i], ticks, values.quality[i]});
       }
     }
+    std::sort(readings_.begin(), readings_.end(),
+              [](const HeldReading& a, const HeldReading& b) { return a.time_ms < b.time_ms; });
   }
-  [[nodiscard]] bool empty() const { return ticks_.empty(); }
+  [[nodiscard]] bool empty() const { return readings_.empty(); }
   /// Null where there is no reading at that time.
-  [[nodiscard]] const std::int64_t* at(std::int64_t time_ms) const {
-    const auto found = ticks_.find(time_ms);
-    return found == ticks_.end() ? nullptr : &found->second;
+  [[nodiscard]] const HeldReading* at(std::int64_t time_ms) const {
+    const auto found = from(time_ms);
+    return found == readings_.end() || found->time_ms != time_ms ? nullptr : &*found;
   }
   [[nodiscard]] bool any_between(std::int64_t after, std::int64_t before) const {
-    const auto next = ticks_.upper_bound(after);
-    return next != ticks_.end() && next->first < before;
+    const auto next = from(after + 1);
+    return next != readings_.end() && next->time_ms < before;
   }
   [[nodiscard]] std::int64_t count_inside(std::int64_t first, std::int64_t last) const {
-    return std::distance(ticks_.lower_bound(first), ticks_.upper_bound(last));
+    return from(last + 1) - from(first);
   }
 
  private:
-  std::map<std::int64_t, std::int64_t> ticks_;
+  [[nodiscard]] std::vector<HeldReading>::const_iterator from(std::int64_t time_ms) const {
+    return std::lower_bound(readings_.begin(), readings_.end(), time_ms,
+                            [](const HeldReading& r, std::int64_t t) { return r.time_ms < t; });
+  }
+  std::vector<HeldReading> readings_;
 };
+
+std::int64_t ticks_given(const StageSeries& series, const StageReading& reading) {
+  return ticks_of(reading.value, series.unit, series.decimals);
+}
+
+/// A file that states no quality does not contradict the one that is held.
+bool contradicts(const StageSeries& series, const StageReading& reading, const HeldReading& held) {
+  return ticks_given(series, reading) != held.ticks ||
+         (reading.quality != Quality::unchecked && reading.quality != held.quality);
+}
+
+void require_rising(const StageSeries& series) {
+  for (std::size_t i = 1; i < series.readings.size(); ++i) {
+    assert(series.readings[i].time > series.readings[i - 1].time);
+  }
+}
 
 using Slice = std::pair<std::size_t, std::size_t>;  ///< of the series' readings, the end excluded
 
@@ -72,8 +102,8 @@ class Appender {
       std::vector<PieceReading> run;
       for (std::size_t i = slice.first; i < slice.second; ++i) {
         const StageReading& reading = series_.readings[i];
-        if (const std::int64_t* value = held.at(to_ms(reading.time))) {
-          repeat(reading, *value);
+        if (const HeldReading* same_time = held.at(to_ms(reading.time))) {
+          repeat(reading, *same_time);
           continue;
         }
         // A piece decides all that it spans, so it must not reach over a held reading.
@@ -102,8 +132,8 @@ class Appender {
   }
 
  private:
-  void repeat(const StageReading& reading, std::int64_t held) {
-    if (ticks_of(reading.value, series_.unit, series_.decimals) != held) {
+  void repeat(const StageReading& reading, const HeldReading& held) {
+    if (contradicts(series_, reading, held)) {
       throw StoreError(Kind::refused,
                        "a reading of " + series_.station + " at " + format_time(reading.time, {}) +
                            " contradicts the one that is held; a correction needs --correct --reason");
@@ -118,8 +148,10 @@ class Appender {
     for (std::size_t i = slice.first; i < slice.second; ++i) {
       const StageReading& reading = series_.readings[i];
       readings.push_back(piece_reading(reading, file_));
-      const std::int64_t* value = held.at(to_ms(reading.time));
-      if (value != nullptr && *value == ticks_of(reading.value, series_.unit, series_.decimals)) ++same;
+      const HeldReading* before = held.at(to_ms(reading.time));
+      const bool equal = before != nullptr && before->ticks == ticks_given(series_, reading) &&
+                         before->quality == reading.quality;
+      if (equal) ++same;
     }
     const std::int64_t spanned = held.count_inside(from, until);
     const auto given = static_cast<std::int64_t>(readings.size());
@@ -141,6 +173,7 @@ class Appender {
     piece.act = act_;
     piece.station = series_.station;
     piece.month = month;
+    piece.file = file_;
     piece.span_first_ms = first;
     piece.span_last_ms = last;
     piece.unit = series_.unit;
@@ -178,23 +211,35 @@ struct MergedReading {
   int decimals;
 };
 
-std::vector<MergedReading> held_readings(const SQLite::Database& db, const std::string& station, int month) {
-  std::vector<MergedReading> all;
+/// The readings in force, by time, and all that the pieces of the month span together.
+struct Merged {
+  std::vector<MergedReading> readings;
+  std::int64_t first_ms = INT64_MAX;
+  std::int64_t last_ms = INT64_MIN;
+};
+
+Merged merged_of(const SQLite::Database& db, const std::string& station, int month) {
+  Merged all;
   for (const InForce& held : in_force(db, station, month, INT64_MAX)) {
-    const std::set<std::int64_t> counts(held.values.time_ms.begin(), held.values.time_ms.end());
+    all.first_ms = std::min(all.first_ms, held.piece.span_first_ms);
+    all.last_ms = std::max(all.last_ms, held.piece.span_last_ms);
+    const auto& times = held.values.time_ms;
     for (const PieceReading& reading : readings_of(held.piece)) {
-      if (counts.count(reading.time_ms) > 0) all.push_back({reading, held.piece.unit, held.piece.decimals});
+      if (!std::binary_search(times.begin(), times.end(), reading.time_ms)) continue;
+      all.readings.push_back({reading, held.piece.unit, held.piece.decimals});
     }
   }
-  std::sort(all.begin(), all.end(),
+  std::sort(all.readings.begin(), all.readings.end(),
             [](const auto& a, const auto& b) { return a.reading.time_ms < b.reading.time_ms; });
   return all;
 }
 
 /// Writes the readings in force as merged pieces of equal content: one, or one a run of the same unit and
-/// decimals.
-void merge_month(SQLite::Database& db, const std::string& station, int month, std::int64_t act) {
-  const auto all = held_readings(db, station, month);
+/// decimals. Together they span all that the pieces before them spanned, so that those need not be read
+/// again.
+bool merge_month(SQLite::Database& db, const std::string& station, int month, std::int64_t act) {
+  const Merged merged = merged_of(db, station, month);
+  const auto& all = merged.readings;
   for (std::size_t from = 0; from < all.size();) {
     std::size_t until = from;
     std::vector<PieceReading> readings;
@@ -207,14 +252,16 @@ void merge_month(SQLite::Database& db, const std::string& station, int month, st
     piece.station = station;
     piece.month = month;
     piece.merged = true;
-    piece.span_first_ms = readings.front().time_ms;
-    piece.span_last_ms = readings.back().time_ms;
+    piece.file = readings.front().file;
+    piece.span_first_ms = from == 0 ? merged.first_ms : readings.front().time_ms;
+    piece.span_last_ms = until < all.size() ? all[until].reading.time_ms - 1 : merged.last_ms;
     piece.unit = all[from].unit;
     piece.decimals = all[from].decimals;
     encode(readings, piece);
     insert_piece(db, piece);
     from = until;
   }
+  return !all.empty();
 }
 
 }  // namespace
@@ -227,9 +274,10 @@ std::vector<StageOverlap> Writer::overlaps(const StageSeries& series, std::size_
       if (held.empty()) continue;
       for (std::size_t i = slice.first; i < slice.second && found.size() < most; ++i) {
         const StageReading& reading = series.readings[i];
-        const std::int64_t* value = held.at(to_ms(reading.time));
-        const std::int64_t given = ticks_of(reading.value, series.unit, series.decimals);
-        if (value != nullptr && *value != given) found.push_back({reading.line, reading.time, *value, given});
+        const HeldReading* before = held.at(to_ms(reading.time));
+        if (before == nullptr || !contradicts(series, reading, *before)) continue;
+        found.push_back({reading.line, reading.time, before->ticks, ticks_given(series, reading),
+                         before->quality, reading.quality});
       }
     }
     return found;
@@ -237,13 +285,13 @@ std::vector<StageOverlap> Writer::overlaps(const StageSeries& series, std::size_
 }
 
 StageTaken Writer::add_stage(const StageSeries& series, std::int64_t file, bool correct) {
+  require_rising(series);
   return guarded([&] {
     Appender appender(impl_->db(), series, impl_->number, file);
     StageTaken taken = correct ? appender.replace() : appender.append();
     if (taken.pieces == 0) return taken;
     for (const int month : months_to_merge(impl_->db(), series.station)) {
-      merge_month(impl_->db(), series.station, month, impl_->number);
-      ++taken.merged;
+      if (merge_month(impl_->db(), series.station, month, impl_->number)) ++taken.merged;
     }
     return taken;
   });

@@ -306,6 +306,21 @@ late.csv:3: station TAR-1 at 2009-12-31T23:30:00Z is held as missing, given as 1
   CHECK(desk.book().newest_act() == before);
 }
 
+TEST_CASE("a reading with another quality contradicts, one that states none repeats") {
+  Desk desk;
+  desk.good("st.csv", kStations);
+  desk.good("s.csv", "station,time,stage_m,quality\nTAR-1,2010-01-01T00:00,1.25,good\n");
+  const std::string poor = "station,time,stage_m,quality\nTAR-1,2010-01-01T00:00,1.25,poor\n";
+  const Taken taken = desk.take_text("poor.csv", poor);
+  REQUIRE(taken.findings.size() == 1);
+  CHECK(taken.findings[0].fault == "station TAR-1 at 2009-12-31T23:00:00Z is held as good, given as poor");
+  const Taken unsaid = desk.good("unsaid.csv", "station,time,stage_m\nTAR-1,2010-01-01T00:00,1.25\n");
+  CHECK(unsaid.files[0].repeated == 1);
+  desk.good("poor.csv", poor, true);
+  const store::StageBlock block = desk.book().stage_block("TAR-1", utc_month_of(from_ms(1'262'300'400'000)));
+  CHECK(block.quality == std::vector<Quality>{Quality::poor});
+}
+
 TEST_CASE("a stage correction file replaces what it spans, blank means missing") {
   Desk desk;
   desk.good("st.csv", kStations);
