@@ -3,7 +3,9 @@
 #include <algorithm>
 #include <cmath>
 #include <map>
+#include <set>
 
+#include "publish/coverage.hpp"
 #include "publish/rounding.hpp"
 #include "replay/replay.hpp"
 
@@ -17,28 +19,53 @@ struct DayFigure {
 };
 using Days = std::map<int, DayFigure>;
 
-Days computed_days(const store::Book& book, const history::View& view, StationDay from, StationDay until,
-                   const store::Settings& settings) {
-  Days days;
-  replay::Replayer(book, view).day_means(from, until, [&](const replay::DayMean& mean) {
-    if (mean.mean_m3s) days[mean.day.number] = {as_published(*mean.mean_m3s, settings), 0};
-  });
-  return days;
-}
-
-/// What stands before: of the newest edition, over it what was published.
-Days days_before(const store::Book& book, const history::View& view, StationDay from, StationDay until,
-                 const store::Settings& settings) {
-  Days days;
-  if (view.edition) days = computed_days(book, view, from, until, settings);
-  for (const auto& head : book.publications(view.station, view.known)) {
-    const auto publication = book.publication(view.station, head.number);
-    for (const auto& day : publication->days) {
-      if (from.number <= day.day && day.day < until.number) days[day.day] = {day.mean, head.number};
-    }
+/// Day means of a station, all in units of the same decimals.
+class DayReader {
+ public:
+  DayReader(const store::Book& book, const history::View& before)
+      : book_(book),
+        before_(before),
+        clock_(book.station(before.station, before.known)->value.clock),
+        settings_(book.settings(before.known)),
+        heads_(book.publications(before.station, before.known)),
+        decimals_(settings_.published_decimals) {
+    for (const auto& head : heads_) decimals_ = std::max<std::int64_t>(decimals_, head.decimals);
   }
-  return days;
-}
+  [[nodiscard]] const StationClock& clock() const { return clock_; }
+
+  [[nodiscard]] Days computed(const history::View& view, StationDay from, StationDay until) const {
+    const std::int64_t factor = power_of_ten(decimals_ - settings_.published_decimals);
+    Days days;
+    replay::Replayer(book_, view).day_means(from, until, [&](const replay::DayMean& mean) {
+      if (mean.mean_m3s) days[mean.day.number] = {as_published(*mean.mean_m3s, settings_) * factor, 0};
+    });
+    return days;
+  }
+
+  /// What stands before: of the newest edition, over it what was published.
+  [[nodiscard]] Days before(StationDay from, StationDay until) const {
+    Days days;
+    if (before_.edition) days = computed(before_, from, until);
+    for (const auto& stretch : coverage(heads_, start_of(from, clock_), start_of(until, clock_))) {
+      const auto publication = book_.publication(before_.station, stretch.publication).value();
+      const std::int64_t factor = power_of_ten(decimals_ - publication.decimals);
+      for (const auto& day : publication.days) {
+        const Instant begin = start_of(StationDay{day.day}, clock_);
+        if (begin < stretch.from || begin >= stretch.until) continue;
+        days[day.day] = {day.mean ? std::optional(*day.mean * factor) : std::nullopt, publication.number};
+      }
+    }
+    return days;
+  }
+
+ private:
+  const store::Book& book_;
+  const history::View& before_;
+  StationClock clock_;
+  store::Settings settings_;
+  std::vector<store::Publication> heads_;
+  std::int64_t decimals_;
+};
 
 const DayFigure& figure_at(const Days& days, int day) {
   static const DayFigure none;
@@ -68,7 +95,7 @@ class Comparison {
   }
 
   [[nodiscard]] StretchEffect finish() {
-    if (before_ > 0) effect_.volume_change_pct = 100 * (after_ / before_ - 1);
+    if (before_ > 0) effect_.volume_change_pct = 100 * (after_ - before_) / before_;
     return effect_;
   }
 
@@ -84,7 +111,7 @@ class Comparison {
       ++effect_.beyond_10_pct;
       return;
     }
-    const double percent = 100 * (after / before - 1);
+    const double percent = 100 * (after - before) / before;
     if (std::abs(percent) > 5) ++effect_.beyond_5_pct;
     if (std::abs(percent) > 10) ++effect_.beyond_10_pct;
     if (effect_.largest_change_pct && std::abs(percent) <= std::abs(*effect_.largest_change_pct)) return;
@@ -96,59 +123,60 @@ class Comparison {
   double before_ = 0, after_ = 0;
 };
 
-StationDay first_day_from(Instant time, const StationClock& clock) {
-  const StationDay day = day_of(time, clock);
-  return start_of(day, clock) >= time ? day : StationDay{day.number + 1};
-}
-
-/// The end of an adopted interval: where its period ends in the new edition.
+/// The end of an adopted interval: as given, else where its period ends in the new edition.
 Instant end_of(const history::Adoption& adoption, const std::vector<Period>& periods, Instant record_end) {
+  if (adoption.period.until) return std::min(*adoption.period.until, record_end);
   const int at = history::period_at(periods, adoption.period.from);
   if (at < 0) return record_end;
   const auto& until = periods[static_cast<std::size_t>(at)].until;
   return until ? std::min(*until, record_end) : record_end;
 }
 
+/// Compares the days that a stretch touches and notes the publications that hold changed ones.
+StretchEffect compare(StretchEffect stretch, const DayReader& reader, const history::View& after,
+                      std::set<int>& publications) {
+  Comparison comparison(stretch);
+  if (stretch.from < stretch.until) {
+    const StationDay first = day_of(stretch.from, reader.clock());
+    const StationDay end{day_of(stretch.until - Millis(1), reader.clock()).number + 1};
+    const Days was = reader.before(first, end);
+    const Days is = reader.computed(after, first, end);
+    for (int day = first.number; day < end.number; ++day) {
+      const DayFigure& old = figure_at(was, day);
+      const DayFigure& now = figure_at(is, day);
+      comparison.add(day, old, now);
+      if (old.publication > 0 && old.units != now.units) publications.insert(old.publication);
+    }
+  }
+  return comparison.finish();
+}
+
 }  // namespace
 
 Effect effect_of(const store::Book& book, const history::View& before, const std::vector<Period>& periods,
                  const std::vector<history::Adoption>& adopted) {
-  Effect effect;
   const auto span = book.stage_span(before.station, Known{before.data_version});
-  if (!span) return effect;
-  const StationClock clock = book.station(before.station, before.known)->value.clock;
-  const store::Settings settings = book.settings(before.known);
+  const DayReader reader(book, before);
   history::View after = before;
   after.edition = Edition{before.station, 0, {}, 0, periods};
 
   std::vector<history::Adoption> by_time = adopted;
   std::sort(by_time.begin(), by_time.end(),
             [](const auto& a, const auto& b) { return a.period.from < b.period.from; });
+  Effect effect;
+  std::set<int> publications;
   for (const auto& adoption : by_time) {
     StretchEffect stretch;
-    stretch.from = std::max(adoption.period.from, span->first);
-    stretch.until = end_of(adoption, periods, span->second);
     stretch.curve = adoption.period.curve;
-    // The day in which the period begins changes too.
-    const StationDay first = day_of(stretch.from, clock), end = first_day_from(stretch.until, clock);
-    Comparison comparison(stretch);
-    if (first < end && stretch.from < stretch.until) {
-      const Days was = days_before(book, before, first, end, settings);
-      const Days is = computed_days(book, after, first, end, settings);
-      for (int day = first.number; day < end.number; ++day) {
-        const DayFigure& old = figure_at(was, day);
-        const DayFigure& now = figure_at(is, day);
-        comparison.add(day, old, now);
-        const bool touched = old.publication > 0 && old.units != now.units;
-        const auto& known = effect.publications;
-        if (touched && std::find(known.begin(), known.end(), old.publication) == known.end()) {
-          effect.publications.push_back(old.publication);
-        }
-      }
+    stretch.from = stretch.until = adoption.period.from;
+    if (span) {
+      // Nothing changes outside the record.
+      stretch.from = std::max(adoption.period.from, span->first);
+      stretch.until = std::max(stretch.from, end_of(adoption, periods, span->second + Millis(1)));
     }
-    effect.stretches.push_back(comparison.finish());
+    effect.stretches.push_back(compare(stretch, reader, after, publications));
   }
-  std::sort(effect.publications.begin(), effect.publications.end());
+  effect.publications.assign(publications.begin(), publications.end());
   return effect;
 }
 

@@ -3,16 +3,10 @@
 #include <algorithm>
 
 #include "hydraulics/power.hpp"
+#include "publish/rounding.hpp"
 
 namespace scourbook::publish {
 namespace {
-
-/// 10^n for small n.
-std::int64_t power_of_ten(int n) {
-  std::int64_t power = 1;
-  for (int i = 0; i < n; ++i) power *= 10;
-  return power;
-}
 
 /// Figures of a publication in the units of a series that has no fewer decimals.
 class Units {

@@ -11,13 +11,6 @@
 namespace scourbook::publish {
 namespace {
 
-/// 10^n, exact for n up to 18.
-std::int64_t power_of_ten(std::int64_t n) {
-  std::int64_t power = 1;
-  for (std::int64_t i = 0; i < n; ++i) power *= 10;
-  return power;
-}
-
 /// Decimals that a figure of `digits` significant digits has, at most `most`. Negative for tens, hundreds,
 /// ...
 std::int64_t decimals_of(double value, std::int64_t digits, std::int64_t most) {
@@ -53,6 +46,12 @@ double error_of_product(double a, double b, double product) {
 }
 
 }  // namespace
+
+std::int64_t power_of_ten(std::int64_t n) {
+  std::int64_t power = 1;
+  for (std::int64_t i = 0; i < n; ++i) power *= 10;
+  return power;
+}
 
 std::int64_t as_published(double discharge_m3s, const store::Settings& settings) {
   if (!(discharge_m3s > 0)) return 0;

@@ -8,6 +8,9 @@
 
 namespace scourbook::publish {
 
+/// 10^n for n from 0 to 18.
+[[nodiscard]] std::int64_t power_of_ten(std::int64_t n);
+
 /// The largest figure that is given, in units; a larger flow is cut to it.
 inline constexpr std::int64_t kMostUnits = 1'000'000'000'000'000'000;
 
