@@ -1,5 +1,7 @@
 #include "publish/recompute.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <set>
 
@@ -12,9 +14,20 @@ namespace {
 std::map<int, RatingCurve> curves_of(const store::Book& book, const history::View& view) {
   std::map<int, RatingCurve> curves;
   for (const Period& period : view.edition->periods) {
-    if (period.curve) curves.emplace(*period.curve, book.curve(view.station, *period.curve).value());
+    if (!period.curve || curves.count(*period.curve) != 0) continue;
+    auto curve = book.curve(view.station, *period.curve);
+    if (!curve) {
+      throw store::StoreError(store::StoreError::Kind::damaged,
+                              fmt::format("station {} has no curve {}, which its edition {} names",
+                                          view.station, *period.curve, view.edition->number));
+    }
+    curves.emplace(*period.curve, *std::move(curve));
   }
   return curves;
+}
+
+Instant end_of(UtcMonth month) {
+  return start_of(UtcMonth{month.number + 1});
 }
 
 /// The curve that a period passes from; nothing where none is in force just before it.
@@ -48,18 +61,52 @@ std::vector<LevelReading> Recomputer::readings(Instant from, Instant until) cons
   return all;
 }
 
+std::optional<LevelReading> Recomputer::last_before(Instant time) const {
+  auto months = book_.stage_months(view_.station, Known{view_.data_version});
+  for (auto month = months.rbegin(); month != months.rend(); ++month) {
+    if (start_of(*month) >= time) continue;
+    const auto found = readings(start_of(*month), std::min(time, end_of(*month)) - Millis(1));
+    if (!found.empty()) return found.back();
+  }
+  return {};
+}
+
+std::optional<LevelReading> Recomputer::first_after(Instant time) const {
+  for (const UtcMonth month : book_.stage_months(view_.station, Known{view_.data_version})) {
+    if (end_of(month) <= time) continue;
+    const auto found = readings(std::max(time + Millis(1), start_of(month)), end_of(month) - Millis(1));
+    if (!found.empty()) return found.front();
+  }
+  return {};
+}
+
+/// Of section and channel one governs: the channel from the takeover up; below it, or where none is known,
+/// the lesser flow. Overbank controls add to it.
 TracedCurve Recomputer::through(int curve, double level_m) const {
   TracedCurve traced;
   traced.curve = curves_.at(curve);
   traced.act = book_.curve_act(view_.station, curve);
   traced.level_m = level_m;
-  const rating::Flow flow = rating::evaluate(traced.curve, level_m);
-  traced.discharge_m3s = flow.discharge_m3s;
-  for (std::size_t k = 0; k < traced.curve.controls.size(); ++k) {
-    const ControlCoefficients& control = traced.curve.controls[k];
-    const double own = rating::control_flow(control, level_m);
-    const bool adds = control.kind == ControlKind::overbank && own > 0;
-    traced.controls.push_back({control, own, adds || static_cast<int>(k) == flow.control});
+  TracedControl *section = nullptr, *channel = nullptr;
+  traced.controls.reserve(traced.curve.controls.size());
+  for (const ControlCoefficients& control : traced.curve.controls) {
+    auto& own = traced.controls.emplace_back();
+    own.control = control;
+    own.discharge_m3s = rating::control_flow(control, level_m);
+    if (control.kind == ControlKind::section) section = &own;
+    if (control.kind == ControlKind::channel) channel = &own;
+    if (control.kind == ControlKind::overbank) own.counts = own.discharge_m3s > 0;
+  }
+  TracedControl* governs = section == nullptr ? channel : section;
+  if (section != nullptr && channel != nullptr) {
+    const auto& takeover = traced.curve.takeover_level_m;
+    const bool taken_over = takeover && level_m >= *takeover;
+    if (taken_over || channel->discharge_m3s < section->discharge_m3s) governs = channel;
+  }
+  if (governs != nullptr) governs->counts = governs->discharge_m3s > 0;
+  if (governs != nullptr) traced.discharge_m3s = governs->discharge_m3s;
+  for (const TracedControl& own : traced.controls) {
+    if (own.control.kind == ControlKind::overbank) traced.discharge_m3s += own.discharge_m3s;
   }
   return traced;
 }

@@ -1,6 +1,6 @@
 #pragma once
 // Flows computed again by the definitions alone, one value after another: the path that a trace holds a
-// replay against.
+// replay against. Of the replay it uses nothing; of the curve only the flow of one control at one level.
 
 #include <map>
 #include <optional>
@@ -35,11 +35,14 @@ struct Segment {
 
 class Recomputer {
  public:
-  /// The view must have an edition.
+  /// The view must have an edition. Throws StoreError damaged where it names a curve that the book lacks.
   Recomputer(const store::Book& book, const history::View& view);
 
   /// Readings with a value in [from, until], by time.
   [[nodiscard]] std::vector<LevelReading> readings(Instant from, Instant until) const;
+  /// The nearest one before and after `time`, however far.
+  [[nodiscard]] std::optional<LevelReading> last_before(Instant time) const;
+  [[nodiscard]] std::optional<LevelReading> first_after(Instant time) const;
   /// The flow at `time_ms`, through the period that holds `side_ms` (time_ms itself, or 1 ms before for the
   /// limit from the left at a boundary). Nothing where no curve is in force.
   [[nodiscard]] std::optional<Evaluated> at(std::int64_t time_ms, std::int64_t side_ms, double level_m) const;
