@@ -4,6 +4,7 @@
 #include <boost/math/distributions/binomial.hpp>
 #include <boost/math/distributions/chi_squared.hpp>
 #include <boost/math/distributions/students_t.hpp>
+#include <boost/math/special_functions/binomial.hpp>
 #include <cmath>
 
 namespace scourbook::rating {
@@ -37,6 +38,31 @@ std::optional<double> runs_z(int runs, int n1, int n2) {
   const double variance = 2 * a * b * (2 * a * b - n) / (n * n * (n - 1));
   if (!(variance > 0)) return {};
   return (runs - mean) / std::sqrt(variance);
+}
+
+namespace {
+
+double binomial(int n, int k) {
+  return k < 0 || k > n
+             ? 0
+             : boost::math::binomial_coefficient<double>(static_cast<unsigned>(n), static_cast<unsigned>(k));
+}
+
+}  // namespace
+
+double runs_p(int runs, int n1, int n2) {
+  const double all = binomial(n1 + n2, n1);
+  double few = 0, many = 0;
+  for (int u = 1; u <= n1 + n2; ++u) {
+    const int k = u / 2;
+    // u runs are k of either sign, or k and k + 1.
+    const double ways = u % 2 == 0 ? 2 * binomial(n1 - 1, k - 1) * binomial(n2 - 1, k - 1)
+                                   : binomial(n1 - 1, k - 1) * binomial(n2 - 1, k) +
+                                         binomial(n1 - 1, k) * binomial(n2 - 1, k - 1);
+    if (u <= runs) few += ways / all;
+    if (u >= runs) many += ways / all;
+  }
+  return std::min(1.0, 2 * std::min(few, many));
 }
 
 std::optional<double> student_t(const std::vector<double>& values) {

@@ -19,6 +19,10 @@ namespace scourbook::rating {
 /// Wolfowitz 1940, from memory). Nothing where n1 or n2 is 0 or the variance is none.
 [[nodiscard]] std::optional<double> runs_z(int runs, int n1, int n2);
 
+/// Two-sided probability of a number of runs as far out or more so, the n1 and n2 signs in random order:
+/// exact (Swed and Eisenhart 1943, from memory). n1 and n2 at least 1, together at most 500.
+[[nodiscard]] double runs_p(int runs, int n1, int n2);
+
 /// Student's t of the mean of `values` against 0, n - 1 degrees of freedom. Nothing for n < 2 or values
 /// without spread.
 [[nodiscard]] std::optional<double> student_t(const std::vector<double>& values);

@@ -19,8 +19,8 @@ using rating::Observation;
 
 const char* const kOwn = "own rule";
 const char* const kIso = "ISO 1100-2:2010 (from memory)";
-constexpr int kLeastSigns = 6, kLeastRuns = 10, kLeastT = 3;
-constexpr double kTwoSided = 1.959963984540;
+constexpr int kLeastSigns = 6, kMostRuns = 500, kLeastT = 3;
+constexpr double kTestLevel = 0.05;
 
 struct Deviation {
   double level_m, ln, sd;
@@ -51,7 +51,7 @@ void tests_of_signs(const std::vector<Deviation>& deviations, std::vector<Diagno
   if (n < kLeastSigns) {
     out.push_back({"signs_p",
                    {},
-                   0.05,
+                   kTestLevel,
                    "not possible",
                    fmt::format("test of signs: needs {} gaugings, there are {}", kLeastSigns, n),
                    rule,
@@ -61,37 +61,45 @@ void tests_of_signs(const std::vector<Deviation>& deviations, std::vector<Diagno
   const auto positive = static_cast<int>(
       std::count_if(deviations.begin(), deviations.end(), [](const Deviation& d) { return d.ln > 0; }));
   const double p = rating::sign_test_p(positive, n);
-  out.push_back({"signs_p", p, 0.05, p >= 0.05 ? "passed" : "failed",
+  out.push_back({"signs_p", p, kTestLevel, p >= kTestLevel ? "passed" : "failed",
                  fmt::format("signs: {} of {} gaugings lie above the curve (p {:.2f})", positive, n, p), rule,
                  kIso});
 }
 
+/// The least p that any number of runs of these signs can have.
+double least_runs_p(int positive, int negative) {
+  const int most = 2 * std::min(positive, negative) + (positive != negative ? 1 : 0);
+  return std::min(rating::runs_p(2, positive, negative), rating::runs_p(most, positive, negative));
+}
+
 void test_of_runs(const std::vector<Deviation>& deviations, std::vector<Diagnostic>& out) {
-  const auto n = static_cast<int>(deviations.size());
   const std::string rule =
-      "runs of equal sign in the order of level, normal approximation without continuity correction, at 5 %";
+      "two-sided exact probability of the number of runs of equal sign in the order of level, at 5 %";
   std::vector<double> values;
   for (const Deviation& d : deviations) values.push_back(d.ln);
-  const auto positive =
-      static_cast<int>(std::count_if(values.begin(), values.end(), [](double v) { return v > 0; }));
-  const auto negative =
-      static_cast<int>(std::count_if(values.begin(), values.end(), [](double v) { return v < 0; }));
-  const int runs = rating::count_runs(values);
-  const auto z = n >= kLeastRuns ? rating::runs_z(runs, positive, negative) : std::nullopt;
-  if (!z) {
-    out.push_back({"runs_z",
+  const auto count = [&](auto sign) {
+    return static_cast<int>(std::count_if(values.begin(), values.end(), sign));
+  };
+  const int positive = count([](double v) { return v > 0; }),
+            negative = count([](double v) { return v < 0; });
+  const bool possible = positive > 0 && negative > 0 && positive + negative <= kMostRuns &&
+                        least_runs_p(positive, negative) < kTestLevel;
+  if (!possible) {
+    out.push_back({"runs_p",
                    {},
-                   kTwoSided,
+                   kTestLevel,
                    "not possible",
-                   fmt::format("test of runs: needs {} gaugings on both sides of the curve, there are {}",
-                               kLeastRuns, n),
+                   fmt::format("test of runs: {} gaugings above and {} below the curve can show nothing",
+                               positive, negative),
                    rule,
                    kIso});
     return;
   }
+  const int runs = rating::count_runs(values);
+  const double p = rating::runs_p(runs, positive, negative);
   out.push_back(
-      {"runs_z", *z, kTwoSided, std::abs(*z) <= kTwoSided ? "passed" : "failed",
-       fmt::format("runs: {} changes between above and below in the order of level (z {:.2f})", runs - 1, *z),
+      {"runs_p", p, kTestLevel, p >= kTestLevel ? "passed" : "failed",
+       fmt::format("runs: {} changes between above and below in the order of level (p {:.2f})", runs - 1, p),
        rule, kIso});
 }
 
