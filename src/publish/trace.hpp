@@ -56,14 +56,17 @@ struct TracedValue {
   history::View view;
   Period period;  ///< that holds `time`
   std::int64_t edition_act = 0;
-  std::vector<TracedReading> readings;   ///< one at the time itself, else the two around it
-  std::vector<TracedCurve> curves;       ///< the incoming last; empty where there is no flow
+  /// One at the time itself, else the nearest on each side that have a level, however far.
+  std::vector<TracedReading> readings;
+  /// The incoming last; between readings first those of the earlier end of the stretch (a reading or a
+  /// boundary), then those of its later end. Empty where there is no flow.
+  std::vector<TracedCurve> curves;
   std::string no_flow_because;           ///< in words, where there is no value
   std::optional<double> discharge_m3s;   ///< as a replay gives it
   std::optional<double> recomputed_m3s;  ///< from the readings above by scalar arithmetic alone
   double sd_ln_q = 0;
   Flags flags = 0;
-  Quality quality = Quality::missing;
+  Quality quality = Quality::missing;  ///< as published where it is
 
   std::optional<int> publication;  ///< newest that covers the time
   std::int64_t publication_act = 0;
@@ -111,9 +114,9 @@ struct TracedDay {
   double share = 0;
   double sd_ln_q = 0;
   Flags flags = 0;
-  Quality quality = Quality::missing;
-  std::vector<TracedCurve> curves;  ///< level and flow left 0
-  std::vector<std::string> files;   ///< names of the stage files whose readings took part
+  Quality quality = Quality::missing;  ///< as published where it is
+  std::vector<TracedCurve> curves;     ///< level and flow left 0
+  std::vector<std::string> files;      ///< names of the stage files whose readings took part
   std::optional<int> publication;
   std::int64_t publication_act = 0;
   std::optional<int> replay;
@@ -122,6 +125,7 @@ struct TracedDay {
   int decimals = 3;
   std::int64_t digits = 3;
   std::vector<Act> acts;
+  /// As for a value.
   [[nodiscard]] bool agrees() const;
 };
 /// `request.time` lies in the day.

@@ -1,5 +1,4 @@
 #include <algorithm>
-#include <cmath>
 #include <set>
 
 #include "publish/rounding.hpp"
@@ -9,28 +8,22 @@
 namespace scourbook::publish {
 namespace {
 
-/// Relative difference that two ways of summing a day may have.
-constexpr double kSumming = 1e-12;
-
 class DayTracer {
  public:
   DayTracer(const store::Book& book, const TraceRequest& request)
-      : book_(book),
-        state_(state_of(book, request)),
-        again_(book, state_.view),
-        clock_(book.station(request.station, request.known)->value.clock) {
+      : book_(book), state_(state_of(book, request)), again_(book, state_.made) {
     out_.station = request.station;
-    out_.day = day_of(request.time, clock_);
+    out_.day = day_of(request.time, state_.clock);
     out_.view = state_.view;
     out_.decimals = static_cast<int>(state_.settings.published_decimals);
     out_.digits = state_.settings.published_digits;
-    begin_ms_ = to_ms(start_of(out_.day, clock_));
-    end_ms_ = to_ms(start_of(StationDay{out_.day.number + 1}, clock_));
+    begin_ms_ = to_ms(start_of(out_.day, state_.clock));
+    end_ms_ = to_ms(start_of(StationDay{out_.day.number + 1}, state_.clock));
   }
 
   TracedDay run() {
     recompute();
-    const replay::Replayer replayer(book_, state_.view);
+    const replay::Replayer replayer(book_, state_.made);
     replayer.day_means(out_.day, StationDay{out_.day.number + 1}, [&](const replay::DayMean& mean) {
       out_.mean_m3s = mean.mean_m3s;
       out_.share = mean.share;
@@ -41,7 +34,7 @@ class DayTracer {
     set_published();
     for (TracedCurve& curve : out_.curves) {
       complete(book_, state_.view, curve);
-      add_acts(book_, out_.station, curve, acts_);
+      add_acts(book_, curve.curve, curve.act, acts_);
     }
     add_acts(book_, state_, acts_);
     out_.acts = acts_.load(book_);
@@ -79,11 +72,14 @@ class DayTracer {
     }
   }
 
+  /// The part of a segment in [from, until): its ends read off the line, and exactly theirs where they are.
   [[nodiscard]] static TracedPiece cut(const Segment& s, std::int64_t from, std::int64_t until) {
+    const double first = s.from.discharge_m3s, last = s.until.discharge_m3s;
     const auto at = [&](std::int64_t time) {
+      if (time == s.until_ms) return last;
       const double share =
           static_cast<double>(time - s.from_ms) / static_cast<double>(s.until_ms - s.from_ms);
-      return s.from.discharge_m3s + (s.until.discharge_m3s - s.from.discharge_m3s) * share;
+      return first + (last - first) * share;
     };
     return {from_ms(from), from_ms(until), at(from), at(until), s.from.curves.back().curve.number};
   }
@@ -111,12 +107,8 @@ class DayTracer {
       acts_.add(origin->act);
     }
     for (const std::int64_t file : files) out_.files.push_back(file_name(book_, file));
-    const Known data{state_.view.data_version};
-    for (const auto& row : book_.gauge_zeros(out_.station, data)) {
-      if (to_ms(row.value.valid_from) < end_ms_) acts_.add(row.act);
-    }
-    for (const auto& row : book_.stage_corrections(out_.station, data)) {
-      if (to_ms(row.value.from) < end_ms_ && to_ms(row.value.until) > begin_ms_) acts_.add(row.act);
+    if (!times.empty()) {
+      add_level_acts(book_, state_.view, from_ms(*times.begin()), from_ms(*times.rbegin()), acts_);
     }
   }
 
@@ -128,14 +120,15 @@ class DayTracer {
     out_.replay = state_.publication->replay;
     out_.decimals = state_.publication->decimals;
     for (const auto& day : state_.publication->days) {
-      if (day.day == out_.day.number) out_.published_units = day.mean;
+      if (day.day != out_.day.number) continue;
+      out_.published_units = day.mean;
+      out_.quality = day.quality;
     }
   }
 
   const store::Book& book_;
   TracedState state_;
   Recomputer again_;
-  StationClock clock_;
   TracedDay out_;
   ActNumbers acts_;
   std::int64_t begin_ms_ = 0, end_ms_ = 0;
@@ -144,8 +137,7 @@ class DayTracer {
 }  // namespace
 
 bool TracedDay::agrees() const {
-  if (mean_m3s.has_value() != recomputed_m3s.has_value()) return false;
-  if (mean_m3s && std::abs(*mean_m3s - *recomputed_m3s) > kSumming * std::abs(*mean_m3s)) return false;
+  if (!same_bits(mean_m3s, recomputed_m3s)) return false;
   return !publication || published_units == recomputed_units;
 }
 

@@ -2,7 +2,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <cstring>
 
 #include "history/adopt.hpp"
 #include "publish/rounding.hpp"
@@ -12,18 +11,10 @@
 namespace scourbook::publish {
 namespace {
 
-bool same_bits(const std::optional<double>& a, const std::optional<double>& b) {
-  if (a.has_value() != b.has_value()) return false;
-  return !a || std::memcmp(&*a, &*b, sizeof *a) == 0;
-}
-
 class ValueTracer {
  public:
   ValueTracer(const store::Book& book, const TraceRequest& request)
-      : book_(book),
-        state_(state_of(book, request)),
-        again_(book, state_.view),
-        clock_(book.station(request.station, request.known)->value.clock) {
+      : book_(book), state_(state_of(book, request)), again_(book, state_.made) {
     out_.station = request.station;
     out_.time = request.time;
     out_.view = state_.view;
@@ -34,17 +25,17 @@ class ValueTracer {
 
   TracedValue run() {
     set_period();
-    const auto origin = book_.reading_origin(out_.station, out_.time, data());
-    if (origin) {
+    const bool is_reading = book_.reading_origin(out_.station, out_.time, data()).has_value();
+    if (is_reading) {
       at_reading();
     } else {
       between_readings();
     }
-    set_replayed(origin.has_value());
+    set_replayed(is_reading);
     set_published();
     for (TracedCurve& curve : out_.curves) {
       complete(book_, state_.view, curve);
-      add_acts(book_, out_.station, curve, acts_);
+      add_acts(book_, curve.curve, curve.act, acts_);
     }
     add_acts(book_, state_, acts_);
     out_.acts = acts_.load(book_);
@@ -55,25 +46,21 @@ class ValueTracer {
   [[nodiscard]] Known data() const { return Known{state_.view.data_version}; }
 
   void set_period() {
-    const auto& periods = state_.view.edition->periods;
-    const int at = history::period_at(periods, out_.time);
+    const auto& edition = *state_.view.edition;
+    const int at = history::period_at(edition.periods, out_.time);
     if (at < 0) {
-      out_.no_flow_because = "no period of the edition holds this time";
+      because(fmt::format("no period of edition {} holds this time", edition.number));
       return;
     }
-    out_.period = periods[static_cast<std::size_t>(at)];
-    if (!out_.period.curve) {
-      out_.no_flow_because = fmt::format("the period has no curve: {}", word(out_.period.none));
-    }
+    out_.period = edition.periods[static_cast<std::size_t>(at)];
+    if (!out_.period.curve) because(fmt::format("the period has no curve: {}", word(out_.period.none)));
   }
 
   void at_reading() {
-    const auto readings = again_.readings(out_.time, out_.time);
     add_reading(out_.time);
+    const auto readings = again_.readings(out_.time, out_.time);
     if (readings.empty()) {
-      const bool zero = again_.datum().zero_at(out_.time).has_value();
-      because(zero ? "the reading at this time is missing" : "there is no gauge zero yet at this time");
-      return;
+      because(has_gauge_zero() ? "the reading at this time is missing" : "it is before the first gauge zero");
     }
     if (!out_.no_flow_because.empty()) return;
     const LevelReading& reading = readings.front();
@@ -84,27 +71,13 @@ class ValueTracer {
   }
 
   void between_readings() {
-    const auto margin = Millis(again_.longest_gap_ms());
-    const auto readings = again_.readings(out_.time - margin, out_.time + margin);
-    const auto after = std::find_if(readings.begin(), readings.end(),
-                                    [&](const LevelReading& r) { return r.time_ms > to_ms(out_.time); });
-    if (after == readings.begin() || after == readings.end()) {
-      because(fmt::format("there is no reading on both sides within the longest gap of {} minutes",
-                          again_.longest_gap_ms() / 60'000));
-      return;
-    }
-    const LevelReading& a = *std::prev(after);
-    const LevelReading& b = *after;
-    add_reading(from_ms(a.time_ms));
-    add_reading(from_ms(b.time_ms));
-    if (b.time_ms - a.time_ms > again_.longest_gap_ms()) {
-      because(
-          fmt::format("the readings around it lie {} minutes apart, more than the longest gap of {} minutes",
-                      (b.time_ms - a.time_ms) / 60'000, again_.longest_gap_ms() / 60'000));
-      return;
-    }
+    const auto before = again_.last_before(out_.time);
+    const auto after = again_.first_after(out_.time);
+    if (before) add_reading(from_ms(before->time_ms));
+    if (after) add_reading(from_ms(after->time_ms));
+    because(without_neighbours(before, after));
     if (!out_.no_flow_because.empty()) return;
-    for (Segment& segment : again_.between(a, b)) {
+    for (Segment& segment : again_.between(*before, *after)) {
       if (to_ms(out_.time) < segment.from_ms || to_ms(out_.time) >= segment.until_ms) continue;
       const double share = static_cast<double>(to_ms(out_.time) - segment.from_ms) /
                            static_cast<double>(segment.until_ms - segment.from_ms);
@@ -114,6 +87,29 @@ class ValueTracer {
       for (TracedCurve& curve : segment.until.curves) out_.curves.push_back(std::move(curve));
     }
   }
+
+  /// Why there is no flow between two neighbours; empty where there may be one.
+  [[nodiscard]] std::string without_neighbours(const std::optional<LevelReading>& before,
+                                               const std::optional<LevelReading>& after) const {
+    if (!has_gauge_zero()) return "it is before the first gauge zero";
+    if (!before && !after) return "there are no readings";
+    const auto shown = [&](const LevelReading& reading) {
+      return format_time(from_ms(reading.time_ms), state_.clock.offset);
+    };
+    if (!before) return "it is before the first reading, of " + shown(*after);
+    if (!after) return "it is after the last reading, of " + shown(*before);
+    const std::int64_t gap_ms = after->time_ms - before->time_ms;
+    if (gap_ms <= again_.longest_gap_ms()) return {};
+    return fmt::format("gap of {} between readings; flow is joined over at most {}", hours(gap_ms),
+                       hours(again_.longest_gap_ms()));
+  }
+
+  /// "6 h", "2.25 h".
+  [[nodiscard]] static std::string hours(std::int64_t ms) {
+    return fmt::format("{:.4g} h", static_cast<double>(ms) / 3'600'000);
+  }
+
+  [[nodiscard]] bool has_gauge_zero() const { return again_.datum().zero_at(out_.time).has_value(); }
 
   void because(const std::string& reason) {
     if (out_.no_flow_because.empty()) out_.no_flow_because = reason;
@@ -142,29 +138,20 @@ class ValueTracer {
       reading.level = held.front().level;
       reading.correction = again_.datum().correction_at(time);
     }
-    set_zero(reading);
-    acts_.add(reading.act);
-    out_.readings.push_back(std::move(reading));
-  }
-
-  void set_zero(TracedReading& reading) {
     for (const auto& row : book_.gauge_zeros(out_.station, data())) {
-      if (row.value.valid_from > reading.time) break;
+      if (row.value.valid_from > time) break;
       reading.gauge_zero = row.value.zero;
       reading.gauge_zero_source = row.source;
       reading.gauge_zero_file = file_name(book_, row.source.file);
     }
-    for (const auto& row : book_.gauge_zeros(out_.station, data())) {
-      if (row.value.valid_from <= reading.time) acts_.add(row.act);
-    }
-    for (const auto& row : book_.stage_corrections(out_.station, data())) {
-      if (row.value.from <= reading.time && reading.time < row.value.until) acts_.add(row.act);
-    }
+    acts_.add(reading.act);
+    add_level_acts(book_, state_.view, time, time, acts_);
+    out_.readings.push_back(std::move(reading));
   }
 
   /// What the replay's own loops say of that time.
   void set_replayed(bool at_a_reading) {
-    const replay::Replayer replayer(book_, state_.view);
+    const replay::Replayer replayer(book_, state_.made);
     out_.flags = bit(Flag::gap);
     if (at_a_reading) {
       replayer.run(out_.time, out_.time + Millis(1), [&](const replay::FlowBlock& block) {
@@ -201,14 +188,15 @@ class ValueTracer {
     for (const auto& month : publication.months) {
       const auto at = std::lower_bound(month.time_ms.begin(), month.time_ms.end(), to_ms(out_.time));
       if (at == month.time_ms.end() || *at != to_ms(out_.time)) continue;
-      out_.published_units = month.value[static_cast<std::size_t>(at - month.time_ms.begin())];
+      const auto index = static_cast<std::size_t>(at - month.time_ms.begin());
+      out_.published_units = month.value[index];
+      out_.quality = month.quality[index];
     }
   }
 
   const store::Book& book_;
   TracedState state_;
   Recomputer again_;
-  StationClock clock_;
   TracedValue out_;
   ActNumbers acts_;
 };
