@@ -45,8 +45,11 @@ void require_curves(const store::Book& book, const std::string& station,
                     const std::vector<history::Adoption>& adoptions) {
   for (const auto& adoption : adoptions) {
     if (!adoption.period.curve || book.curve(station, *adoption.period.curve)) continue;
-    throw store::StoreError(Kind::refused, fmt::format("{} has no curve {}; it has {}", station,
-                                                       *adoption.period.curve, book.curves(station).size()));
+    const auto curves = book.curves(station);
+    throw store::StoreError(
+        Kind::refused, fmt::format("{} has no curve {}; {}", station, *adoption.period.curve,
+                                   curves.empty() ? std::string("none was derived yet")
+                                                  : fmt::format("its newest is {}", curves.back().number)));
   }
 }
 

@@ -4,6 +4,7 @@
 #include "cli/commands.hpp"
 #include "cli/progress.hpp"
 #include "cli/table.hpp"
+#include "cli/touched.hpp"
 #include "fieldfile/take.hpp"
 
 namespace scourbook::cli {
@@ -20,7 +21,7 @@ Json finding_json(const Finding& finding) {
           {"to_do", finding.remedy}};
 }
 
-Json taken_json(const fieldfile::Taken& taken) {
+Json taken_json(const fieldfile::Taken& taken, const std::vector<std::string>& touched) {
   Json json;
   json["act"] = taken.findings.empty() ? Json(taken.act) : Json(nullptr);
   json["files"] = Json::array();
@@ -33,12 +34,13 @@ Json taken_json(const fieldfile::Taken& taken) {
                              {"stations", file.stations},
                              {"remarks", file.remarks}});
   }
+  json["touched"] = touched;
   json["findings"] = Json::array();
   for (const Finding& finding : taken.findings) json["findings"].push_back(finding_json(finding));
   return json;
 }
 
-std::string taken_text(const fieldfile::Taken& taken) {
+std::string taken_text(const fieldfile::Taken& taken, const std::vector<std::string>& touched) {
   Table table({{"file"},
                {"kind"},
                {"rows", Align::right},
@@ -53,6 +55,7 @@ std::string taken_text(const fieldfile::Taken& taken) {
   }
   const std::string act = taken.act > 0 ? fmt::format("act {}\n", taken.act)
                                         : std::string("nothing new; the book is as it was\n");
+  for (const auto& sentence : touched) remarks += wrapped("! " + sentence, 0);
   return table.text(0) + remarks + act;
 }
 
@@ -71,14 +74,15 @@ Exit take(const TakeArguments& arguments) {
     options.progress = [&](std::int64_t done, std::int64_t all) { progress.show(done, all); };
     taken = fieldfile::take(book, arguments.files, options);
   }
-  if (arguments.json) print(taken_json(taken));
+  const auto touched = taken.findings.empty() ? touched_by(book, taken) : std::vector<std::string>{};
+  if (arguments.json) print(taken_json(taken, touched));
   if (!taken.findings.empty()) {
     if (!arguments.json) {
       std::fputs((describe(taken.findings) + "nothing was stored\n").c_str(), stderr);
     }
     return Exit::bad_input;
   }
-  if (!arguments.json) print(taken_text(taken));
+  if (!arguments.json) print(taken_text(taken, touched));
   return Exit::done;
 }
 
