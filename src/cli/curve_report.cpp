@@ -26,6 +26,13 @@ std::string with_fate(std::string text, Fate fate, Fate usual) {
   return fate == usual ? text : text + " (" + std::string(word(fate)) + ")";
 }
 
+/// Of a gauging from the curve; one that is left out may be anywhere.
+std::string deviation_text(double residual_ln) {
+  constexpr double kMost = 1000;
+  const double percent = 100 * std::expm1(residual_ln);
+  return percent > kMost ? fmt::format("over {:.0f} %", kMost) : fmt::format("{:+.1f} %", percent);
+}
+
 std::string survey_title(const ControlCoefficients& control) {
   return fmt::format("{} from {}", word(control.survey_fate), control.survey);
 }
@@ -186,8 +193,8 @@ std::string gaugings_text(const RatingCurve& curve) {
                {"sd", Align::right},
                {"why"}});
   for (const CurveGauging& g : curve.gaugings) {
-    const std::string deviation = g.residual ? fmt::format("{:+.1f} %", 100 * std::expm1(*g.residual)) : "";
-    const std::string sd = g.residual ? fmt::format("{:.1f} %", 100 * g.sd_ln_q) : "";
+    const std::string deviation = g.residual ? deviation_text(*g.residual) : "";
+    const std::string sd = g.residual && g.sd_ln_q > 0 ? fmt::format("{:.1f} %", 100 * g.sd_ln_q) : "";
     table.add({g.gauging, std::string(word(g.use)), g.role, fmt::format("{:.3f}", g.level_m),
                number(g.discharge_m3s), number(g.curve_m3s), deviation, sd, g.reason});
   }
