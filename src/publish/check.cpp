@@ -3,18 +3,16 @@
 #include <fmt/format.h>
 
 #include <algorithm>
-#include <cmath>
+#include <set>
 
-#include "history/derivation_input.hpp"
+#include "publish/check_parts.hpp"
 #include "publish/publication.hpp"
-#include "rating/evaluate.hpp"
-#include "rederivation/derive.hpp"
 #include "replay/replay.hpp"
 
 namespace scourbook::publish {
 namespace {
 
-constexpr double kRederived = 1e-6;  // |ln Q|
+constexpr double kRederived = 1e-6;  // |ln Q|: derivations may differ in the last digits between machines
 
 class Checker {
  public:
@@ -23,14 +21,10 @@ class Checker {
   CheckReport run() {
     report_.damage =
         book_.verify([&](std::int64_t done, std::int64_t all) { tell("reading rows", done, all); });
-    report_.acts = book_.newest_act();
-    for (const auto& station : book_.stations()) {
-      const std::string& id = station.value.id;
-      guarded("replay", id, [&] { replays(id); });
-      guarded("publication", id, [&] { publications(id); });
-      guarded("curve", id, [&] { out_of_date(id); });
-      if (options_.rederive) guarded("curve", id, [&] { rederive(id); });
-    }
+    guarded("station", "the stations", [&] {
+      report_.acts = book_.newest_act();
+      for (const auto& station : book_.stations()) check_station(station.value.id);
+    });
     return std::move(report_);
   }
 
@@ -43,95 +37,116 @@ class Checker {
     report_.damage.push_back({table, act, text});
   }
 
-  /// What cannot be read any more is damage, and the rest is still looked at.
+  /// What cannot be read any more is damage, and the rest is still looked at. A damaged book may hold
+  /// anything, so nothing that is thrown ends the check.
   template <class Work>
-  void guarded(const std::string& table, const std::string& station, Work work) {
+  bool guarded(const std::string& table, const std::string& what, Work work) {
     try {
       work();
-    } catch (const store::StoreError& error) {
-      damage(table, 0, fmt::format("{}: {}", station, error.what()));
+      return true;
+    } catch (const std::exception& error) {
+      damage(table, 0, fmt::format("{}: {}", what, error.what()));
+      return false;
+    }
+  }
+
+  void check_station(const std::string& station) {
+    unfit_editions_.clear();
+    differing_replays_.clear();
+    // Without these nothing can be computed.
+    if (!guarded("edition", station + " editions", [&] { fitness(station); })) return;
+    guarded("replay", station + " replays", [&] { replays(station); });
+    guarded("publication", station + " publications", [&] { publications(station); });
+    guarded("curve", station + " curves", [&] { out_of_date(station); });
+    if (options_.rederive) guarded("curve", station + " curves", [&] { rederive(station); });
+  }
+
+  /// Finds editions that no flow can be computed through.
+  void fitness(const std::string& station) {
+    std::set<int> unfit_curves;
+    for (const auto& curve : book_.curves(station)) {
+      const std::string why = unfit(curve);
+      if (why.empty()) continue;
+      unfit_curves.insert(curve.number);
+      damage("curve", book_.curve_act(station, curve.number),
+             fmt::format("{} curve {}: {}", station, curve.number, why));
+    }
+    for (const auto& edition : book_.editions(station)) {
+      const std::string why = unfit(edition);
+      if (!why.empty()) {
+        damage("edition", edition.act, fmt::format("{} edition {}: {}", station, edition.number, why));
+      }
+      const bool names_unfit = std::any_of(
+          edition.periods.begin(), edition.periods.end(),
+          [&](const Period& period) { return period.curve && unfit_curves.count(*period.curve) != 0; });
+      if (names_unfit || !why.empty()) unfit_editions_.insert(edition.number);
     }
   }
 
   void replays(const std::string& station) {
-    const auto all = book_.replays(station);
-    for (const auto& kept : all) {
-      ++report_.replays;
-      const auto view = history::view_of(book_, station, {}, kept.edition, kept.data_version);
-      const auto again =
-          replay::make_replay(book_, view, kept.from, kept.until, [&](std::int64_t done, std::int64_t of) {
-            tell(fmt::format("replay {} of {}", kept.number, station), done, of);
-          });
-      report_.replay_months += static_cast<std::int64_t>(again.months.size());
-      compare(kept, again);
+    for (const auto& kept : book_.replays(station)) {
+      const std::string name = fmt::format("{} replay {}", station, kept.number);
+      const bool computed =
+          unfit_editions_.count(kept.edition) == 0 && guarded("replay", name, [&] { compare(kept, name); });
+      if (!computed) differing_replays_.insert(kept.number);
     }
   }
 
-  void compare(const store::ReplayRecord& kept, const store::ReplayRecord& again) {
+  void compare(const store::ReplayRecord& kept, const std::string& name) {
+    const auto view = history::view_of(book_, kept.station, {}, kept.edition, kept.data_version);
+    const auto again =
+        replay::make_replay(book_, view, kept.from, kept.until, [&](std::int64_t done, std::int64_t of) {
+          tell(fmt::format("replay {} of {}", kept.number, kept.station), done, of);
+        });
+    ++report_.replays;
+    report_.replay_months += static_cast<std::int64_t>(again.months.size());
+    const auto differs = [&](const std::string& what) {
+      differing_replays_.insert(kept.number);
+      damage("replay_month", kept.act, name + ": " + what);
+    };
     if (kept.months.size() != again.months.size()) {
-      damage("replay_month", kept.act,
-             fmt::format("{} replay {}: {} months kept, {} computed again", kept.station, kept.number,
-                         kept.months.size(), again.months.size()));
+      differs(fmt::format("{} months kept, {} computed again", kept.months.size(), again.months.size()));
       return;
     }
     for (std::size_t i = 0; i < kept.months.size(); ++i) {
       const auto& a = kept.months[i];
       const auto& b = again.months[i];
       if (a.month == b.month && a.values == b.values && a.sha256 == b.sha256) continue;
-      damage("replay_month", kept.act,
-             fmt::format("{} replay {}: {} computed again gives other flows", kept.station, kept.number,
-                         format_month(a.month)));
+      differs(fmt::format("{} computed again gives other flows", format_month(a.month)));
     }
   }
 
   void publications(const std::string& station) {
     for (const auto& head : book_.publications(station)) {
-      ++report_.publications;
-      const auto kept = book_.publication(station, head.number);
-      const auto replay = book_.replay(station, head.replay);
-      if (!kept || !replay) {
-        damage("publication", head.act,
-               fmt::format("{} publication {} has no replay {}", station, head.number, head.replay));
-        continue;
-      }
-      const auto again = make_publication(book_, *replay, [&](std::int64_t done, std::int64_t of) {
-        tell(fmt::format("publication {} of {}", head.number, station), done, of);
-      });
-      compare(*kept, again);
+      // That its replay cannot be computed again has been said.
+      if (differing_replays_.count(head.replay) != 0) continue;
+      const std::string name = fmt::format("{} publication {}", station, head.number);
+      guarded("publication", name, [&] { compare(head, name); });
     }
   }
 
-  void compare(const store::Publication& kept, const store::Publication& again) {
-    std::int64_t other = 0;
-    std::string first;
-    const auto differs = [&](const std::string& where) {
-      if (other++ == 0) first = where;
-    };
-    if (kept.months.size() != again.months.size() || kept.days.size() != again.days.size()) {
-      differs("its number of months or days");
+  void compare(const store::Publication& head, const std::string& name) {
+    const auto replay = book_.replay(head.station, head.replay);
+    if (!replay) {
+      damage("publication", head.act, fmt::format("{}: its replay {} is not there", name, head.replay));
+      return;
     }
-    for (std::size_t m = 0; m < std::min(kept.months.size(), again.months.size()); ++m) {
-      const auto& a = kept.months[m];
-      const auto& b = again.months[m];
-      report_.published_values += static_cast<std::int64_t>(a.value.size());
-      const bool same = a.month == b.month && a.time_ms == b.time_ms && a.value == b.value &&
-                        a.u95_tenth_pct == b.u95_tenth_pct && a.flags == b.flags && a.quality == b.quality &&
-                        a.curve == b.curve;
-      if (!same) differs(format_month(a.month));
+    const auto kept = book_.publication(head.station, head.number).value();
+    const auto again = make_publication(
+        book_, *replay,
+        [&](std::int64_t done, std::int64_t of) {
+          tell(fmt::format("publication {} of {}", head.number, head.station), done, of);
+        },
+        Known{head.act - 1});
+    ++report_.publications;
+    for (const auto& month : again.months) {
+      report_.published_values += static_cast<std::int64_t>(month.value.size());
     }
-    for (std::size_t d = 0; d < std::min(kept.days.size(), again.days.size()); ++d) {
-      const auto& a = kept.days[d];
-      const auto& b = again.days[d];
-      ++report_.published_values;
-      const bool same = a.day == b.day && a.mean == b.mean && a.u95_tenth_pct == b.u95_tenth_pct &&
-                        a.flags == b.flags && a.quality == b.quality && a.share == b.share &&
-                        a.curves == b.curves;
-      if (!same) differs(format_day({a.day}));
+    report_.published_values += static_cast<std::int64_t>(again.days.size());
+    const std::string where = difference(kept, again);
+    if (!where.empty()) {
+      damage("publication", head.act, fmt::format("{}: computed again, {} differs", name, where));
     }
-    if (other == 0) return;
-    damage("publication", kept.act,
-           fmt::format("{} publication {}: figures computed again differ, first at {} ({} places)",
-                       kept.station, kept.number, first, other));
   }
 
   void out_of_date(const std::string& station) {
@@ -144,64 +159,39 @@ class Checker {
     }
   }
 
-  /// What derive was asked, as far as the curve tells.
-  [[nodiscard]] static history::DerivationRequest request_of(const RatingCurve& curve) {
-    history::DerivationRequest request;
-    request.station = curve.station;
-    request.survey = curve.survey;
-    request.from = curve.from;
-    request.until = curve.until;
-    request.descends_from = curve.parent;
-    request.first = !curve.parent;
-    request.options.hold = curve.hold;
-    for (const ControlCoefficients& control : curve.controls) {
-      if (control.survey_fate == Fate::carried) request.options.carry.push_back(control.name);
-      if (control.scale_fate == Fate::rescaled) request.options.rescale = true;
-    }
-    for (const CurveGauging& gauging : curve.gaugings) {
-      if (gauging.reason == "left out by name") request.options.leave_out.push_back(gauging.gauging);
-      if (gauging.reason == "derived without gaugings") request.options.without_gaugings = true;
-    }
-    return request;
-  }
-
   void rederive(const std::string& station) {
-    for (const auto& curve : book_.curves(station)) {
-      if (curve.form != CurveForm::power) continue;
-      ++report_.curves;
-      const std::int64_t act = book_.curve_act(station, curve.number);
-      const auto collected = history::collect(book_, request_of(curve), Known{act - 1});
-      const auto again = rederivation::derive(collected.input);
-      if (!collected.refusals.empty() || again.status != rederivation::Status::ok) {
-        damage(
-            "curve", act,
-            fmt::format("{} curve {}: it cannot be derived again from what it names", station, curve.number));
-        continue;
-      }
-      const double gap = largest_gap(curve, again.curve);
-      report_.largest_rederivation_gap = std::max(report_.largest_rederivation_gap, gap);
-      if (gap > kRederived) {
-        damage("curve", act,
-               fmt::format("{} curve {}: derived again, its flows differ by up to {:.2g} in ln Q", station,
-                           curve.number, gap));
-      }
+    const auto curves = book_.curves(station);
+    std::int64_t done = 0;
+    for (const auto& curve : curves) {
+      tell(fmt::format("curve {} of {}", curve.number, station), done++,
+           static_cast<std::int64_t>(curves.size()));
+      if (curve.form != CurveForm::power || !unfit(curve).empty()) continue;
+      const std::string name = fmt::format("{} curve {}", station, curve.number);
+      guarded("curve", name, [&] { compare(curve, name); });
     }
   }
 
-  [[nodiscard]] static double largest_gap(const RatingCurve& kept, const RatingCurve& again) {
-    double gap = 0;
-    for (const BandPoint& point : kept.bands) {
-      const double a = rating::evaluate(kept, point.level_m).discharge_m3s;
-      const double b = rating::evaluate(again, point.level_m).discharge_m3s;
-      if (a > 0 && b > 0) gap = std::max(gap, std::abs(std::log(a / b)));
-      if ((a > 0) != (b > 0)) gap = std::max(gap, 1.0);
+  void compare(const RatingCurve& curve, const std::string& name) {
+    const std::int64_t act = book_.curve_act(curve.station, curve.number);
+    const DerivedAgain again = derive_again(book_, curve);
+    ++report_.curves;
+    if (!again.curve) {
+      damage("curve", act,
+             fmt::format("{}: it cannot be derived again from what it names: {}", name, again.refusal));
+      return;
     }
-    return gap;
+    const double gap = largest_gap(curve, *again.curve);
+    report_.largest_rederivation_gap = std::max(report_.largest_rederivation_gap, gap);
+    if (gap > kRederived) {
+      damage("curve", act, fmt::format("{}: derived again, ln Q differs by up to {:.2g}", name, gap));
+    }
   }
 
   const store::Book& book_;
   const CheckOptions& options_;
   CheckReport report_;
+  std::set<int> unfit_editions_;     // of the station at hand
+  std::set<int> differing_replays_;  // and those that could not be computed again
 };
 
 }  // namespace
