@@ -93,10 +93,13 @@ class Inheritor {
     } else {
       start_anew(start, row);
       if (input_.parent) {
-        result_.remarks.push_back(
-            fmt::format("{}: flow law, cross-section or part is not the parent's: it starts from its "
-                        "reach row",
-                        start.control.name));
+        const auto& before = input_.parent->curve.controls;
+        const bool there = std::any_of(before.begin(), before.end(), [&](const ControlCoefficients& c) {
+          return c.name == start.control.name;
+        });
+        result_.remarks.push_back(fmt::format("{}: {}; it starts from its reach row", start.control.name,
+                                              there ? "flow law, cross-section or part is not the parent's"
+                                                    : "the parent has no such control"));
       }
     }
     result_.controls.push_back(std::move(start));
