@@ -256,9 +256,12 @@ class Writer {
   StageTaken add_stage(const StageSeries& series, std::int64_t file, bool correct = false);
 
   /// Stores a proposal; gives it the station's next number, sets number and lineage in the returned copy.
+  /// Throws refused for a figure that is none (naming it), and where the parent is not held.
   [[nodiscard]] RatingCurve add_curve(RatingCurve curve);
+  /// Periods by rising time without overlap, else throws refused. Sets number and act, as do those below.
   [[nodiscard]] Edition add_edition(Edition edition);
   [[nodiscard]] ReplayRecord add_replay(ReplayRecord replay);
+  /// Computes the digest over months and days.
   [[nodiscard]] Publication add_publication(Publication publication);
 
   /// Digests the rows, links the act into the chain and commits, synchronously. Throws io / busy; then

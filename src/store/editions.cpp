@@ -97,6 +97,21 @@ constexpr const char* kReplay =
     "SELECT station, number, act, edition, data_version, method, from_ms, until_ms FROM replay WHERE station "
     "= ? ";
 
+/// By rising time, without overlap; only the last may be open.
+void require_order(const Edition& edition) {
+  for (std::size_t i = 0; i < edition.periods.size(); ++i) {
+    const Period& period = edition.periods[i];
+    const bool ends = !period.until || *period.until > period.from;
+    const bool free =
+        i + 1 == edition.periods.size() || (period.until && *period.until <= edition.periods[i + 1].from);
+    if (ends && free) continue;
+    throw StoreError(Kind::refused, "period " + std::to_string(i + 1) + " of the edition, from " +
+                                        format_time(period.from, {}) +
+                                        (ends ? ", reaches into the next" : ", ends before it begins") +
+                                        "; nothing was stored");
+  }
+}
+
 }  // namespace
 
 std::vector<Edition> Book::editions(const std::string& station, Known known) const {
@@ -140,6 +155,7 @@ std::optional<ReplayRecord> Book::replay(const std::string& station, int number)
 }
 
 Edition Writer::add_edition(Edition edition) {
+  require_order(edition);
   return guarded([&] {
     SQLite::Database& db = impl_->db();
     edition.number = static_cast<int>(next_number(db, "edition", edition.station));
