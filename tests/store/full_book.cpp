@@ -151,7 +151,7 @@ store::Publication publication(int replay) {
     january.quality.push_back(i < 3 ? Quality::good : Quality::missing);
     january.curve.push_back(i < 4 ? 1 : 0);
   }
-  store::PublishedMonth february = january;  // two readings, not equally spaced from a third
+  store::PublishedMonth february = january;  // the last reading is 1 ms late: not equally spaced
   february.month = UtcMonth{january.month.number + 1};
   for (auto& time : february.time_ms) time += 86'400'000;
   february.time_ms.back() += 1;
