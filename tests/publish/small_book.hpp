@@ -68,8 +68,15 @@ struct SmallBook {
     writer.commit();
   }
 
-  TemporaryPath path{"publish"};
+  TemporaryPath path{"publish-" + std::to_string(++count())};
   store::Book book;
+
+ private:
+  /// Several books may live at once in a test.
+  static int& count() {
+    static int number = 0;
+    return number;
+  }
 };
 
 inline store::Settings with_gap(std::int64_t minutes) {
