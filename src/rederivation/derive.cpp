@@ -118,23 +118,45 @@ void set_to_prior(RatingCurve& curve, const rating::Prior& prior, double top_m) 
   rating::refresh(curve, top_m);
 }
 
+/// What the trims of the new period refit of a control's offset, as a variance.
+double trim_variance(const RatingCurve& curve, const rating::Prior& prior, int control) {
+  const auto unknowns = rating::unknowns_of(curve);
+  const rating::Vector moves = rating::offset_gradient(curve, control, unknowns);
+  return moves.cwiseProduct(rating::sds_given_held(prior)).squaredNorm();
+}
+
+/// sd of ln Q of a curve at a level, but for as much of its offset's uncertainty as trims refit anyway: close
+/// to the offset ln Q of the best curve is uncertain without bound, and holding its scale is right all the
+/// same.
+double sd_beyond_trims(const RatingCurve& curve, double level_m, int control, double refitted) {
+  const rating::Matrix covariance = rating::covariance_matrix(curve);
+  const auto unknowns = rating::unknowns_of(curve);
+  const rating::Vector of_flow = rating::ln_q_gradient(curve, level_m, unknowns);
+  const rating::Vector of_offset = rating::offset_gradient(curve, control, unknowns);
+  const double offset = of_offset.dot(covariance * of_offset);
+  const double both = of_flow.dot(covariance * of_offset);
+  const double through_offset = both * both / offset;
+  const double rest = of_flow.dot(covariance * of_flow) - through_offset;
+  return std::sqrt(std::max(0.0, rest) + through_offset * std::max(0.0, 1 - refitted / offset));
+}
+
 /// Holding what is itself hardly known would carry its error on: refused, with the ways on.
 /// `curve` has flow at every gauging.
 std::optional<std::string> poorly_known(const Input& input, const std::vector<ControlStart>& starts,
-                                        const RatingCurve& curve, const std::vector<Observation>& used) {
+                                        const RatingCurve& curve, const rating::Prior& prior,
+                                        const std::vector<Observation>& used) {
   if (!input.parent || input.options.hold != HoldPolicy::velocity_scale) return {};
   const RatingCurve& parent = input.parent->curve;
-  const rating::Matrix covariance = rating::covariance_matrix(parent);
   double worst = 0;
   std::string at;
   for (const Observation& seen : used) {
     if (seen.role != Observation::Role::discharge) continue;
-    const rating::Flow flow = rating::evaluate(curve, seen.level_m);
-    if (flow.control < 0 || starts[static_cast<std::size_t>(flow.control)].in_parent < 0) continue;
-    const ControlCoefficients& now = curve.controls[static_cast<std::size_t>(flow.control)];
-    const ControlCoefficients& before =
-        parent.controls[static_cast<std::size_t>(starts[static_cast<std::size_t>(flow.control)].in_parent)];
-    const double sd = rating::sd_of_unknowns(parent, covariance, before.h0_m + (seen.level_m - now.h0_m));
+    const int now = rating::evaluate(curve, seen.level_m).control;
+    const int before = now < 0 ? -1 : starts[static_cast<std::size_t>(now)].in_parent;
+    if (before < 0) continue;
+    const double depth = seen.level_m - curve.controls[static_cast<std::size_t>(now)].h0_m;
+    const double level = parent.controls[static_cast<std::size_t>(before)].h0_m + depth;
+    const double sd = sd_beyond_trims(parent, level, before, trim_variance(curve, prior, now));
     if (sd > worst) {
       worst = sd;
       at = seen.gauging;
@@ -143,10 +165,10 @@ std::optional<std::string> poorly_known(const Input& input, const std::vector<Co
   if (worst <= kPoorlyKnown) return {};
   return fmt::format(
       "curve {} is itself poorly known where gauging {} lies (sd of ln Q {:.2f}, over {:.2f}): holding its "
-      "velocity scale "
-      "exactly would carry that error on. Either let it be refined by the new gaugings with --hold carried, "
-      "or derive all "
-      "periods together",
+      "velocity "
+      "scale exactly would carry that error on. Either let it be refined by the new gaugings with --hold "
+      "carried, or "
+      "derive all periods together",
       parent.number, at, worst, kPoorlyKnown);
 }
 
@@ -276,7 +298,8 @@ Result derive(const Input& given) {
   if (!offered.refusals.empty()) return refused(std::move(offered.refusals));
   const double top_m = highest_level(offered.used, survey_alone.surveyed_top_m);
   const RatingCurve feasible = rating::feasible_start(survey_alone, knowledge.prior, offered.used, top_m);
-  if (const auto why = poorly_known(input, starts, feasible, offered.used)) return refused({*why});
+  if (const auto why = poorly_known(input, starts, feasible, knowledge.prior, offered.used))
+    return refused({*why});
   const rating::GaugingFit fit = rating::fit_gaugings(survey_alone, knowledge.prior, offered.used, top_m);
   const bool usable = fit.status == rating::FitStatus::converged || fit.status == rating::FitStatus::at_kink;
   if (!usable) {
