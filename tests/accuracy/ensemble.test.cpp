@@ -125,4 +125,44 @@ TEST_CASE("surveys off by 5 cm, stages by 5 mm") {
   check_bands(measured.gauged);
 }
 
+double difference(double a, double b) {
+  return std::abs(a - b) / std::max({std::abs(a), std::abs(b), 1e-300});
+}
+
+/// The largest relative difference of two curves: scale, offset, exponents, flows and sds.
+double largest_difference(const RatingCurve& a, const RatingCurve& b) {
+  double largest = 0;
+  for (std::size_t k = 0; k < a.controls.size(); ++k) {
+    const ControlCoefficients &x = a.controls[k], &y = b.controls[k];
+    for (const auto& [p, q] :
+         {std::pair(x.velocity_scale, y.velocity_scale), std::pair(x.h0_m, y.h0_m),
+          std::pair(x.exponent, y.exponent), std::pair(x.flow_scale, y.flow_scale),
+          std::pair(x.surveyed_c, y.surveyed_c), std::pair(x.section_coefficient, y.section_coefficient)}) {
+      largest = std::max(largest, difference(p, q));
+    }
+  }
+  for (const BandPoint& point : a.bands) {
+    const double level = point.level_m + 0.05;
+    largest = std::max(largest, difference(rating::evaluate(a, level).discharge_m3s,
+                                           rating::evaluate(b, level).discharge_m3s));
+  }
+  return largest;
+}
+
+TEST_CASE("the same data in feet give the same curves, to 1e-9") {
+  for (const char* folder : {"level-exact", "level-5cm"}) {
+    const std::string path = std::string(SCOURBOOK_TESTS_DIR "/accuracy/data/") + folder;
+    const auto si = read_ensemble(path), feet = read_ensemble(path, Units::feet);
+    for (std::size_t i = 0; i < si.size(); ++i) {
+      CAPTURE(folder, si[i].id);
+      const auto first = rederivation::derive(input_of(si[i], 0)),
+                 first_ft = rederivation::derive(input_of(feet[i], 0));
+      CHECK(largest_difference(first.curve, first_ft.curve) < 1e-9);
+      const auto next = rederivation::derive(input_of(si[i], 1, &first.curve));
+      const auto next_ft = rederivation::derive(input_of(feet[i], 1, &first_ft.curve));
+      CHECK(largest_difference(next.curve, next_ft.curve) < 1e-9);
+    }
+  }
+}
+
 }  // namespace
