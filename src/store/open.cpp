@@ -74,26 +74,42 @@ SQLite::Database connect(const std::string& path, int flags) {
 /// A book in a folder that cannot be written has no place for the files beside it; without pending writes it
 /// can be read as it lies there, without locks.
 SQLite::Database connect_unchanging(const std::string& path) {
-  std::error_code fault;
-  const auto pending = fs::file_size(path + "-wal", fault);
-  if (!fault && pending > 0) {
-    throw StoreError(Kind::io, path + " has writes pending in " + path +
-                                   "-wal and its folder cannot be written; copy both to another folder");
+  for (const char* ending : {"-wal", "-journal"}) {
+    std::error_code fault;
+    const auto pending = fs::file_size(path + ending, fault);
+    if (fault || pending == 0) continue;
+    throw StoreError(Kind::io, path + " has writes pending in " + path + ending +
+                                   " and its folder cannot be written; copy both to another folder");
   }
   spdlog::warn("the folder of {} cannot be written: it is read without locks, so nobody may write to it now",
                path);
   return SQLite::Database(unchanging_uri(path), SQLite::OPEN_READONLY | SQLite::OPEN_URI);
 }
 
+/// A write that was cut off while the book was not in write-ahead logging is taken back; SQLite does so for
+/// those only who may write.
+void take_back(const std::string& path) {
+  SQLite::Database db = connect(path, SQLite::OPEN_READWRITE);
+  (void)db.execAndGet("SELECT count(*) FROM sqlite_master");
+}
+
+SQLite::Database connect_and_look(const std::string& path) {
+  SQLite::Database db = connect(path, SQLite::OPEN_READONLY);
+  set_up(db);
+  (void)db.execAndGet("SELECT count(*) FROM sqlite_master");
+  return db;
+}
+
 SQLite::Database connect_to_read(const std::string& path) {
   try {
-    SQLite::Database db = connect(path, SQLite::OPEN_READONLY);
-    set_up(db);
-    (void)db.execAndGet("SELECT count(*) FROM sqlite_master");
-    return db;
+    return connect_and_look(path);
   } catch (const SQLite::Exception& error) {
-    const int code = error.getErrorCode() & 0xff;
-    if (code != SQLITE_CANTOPEN && code != SQLITE_READONLY) throw;
+    const int code = error.getExtendedErrorCode();
+    if (code == SQLITE_READONLY_ROLLBACK) {
+      take_back(path);
+      return connect_and_look(path);
+    }
+    if ((code & 0xff) != SQLITE_CANTOPEN && (code & 0xff) != SQLITE_READONLY) throw;
   }
   SQLite::Database db = connect_unchanging(path);
   set_up(db);

@@ -20,14 +20,17 @@ Millis wait_in_use = std::chrono::seconds(10);
 constexpr const char* kName = "scourbook-failing";
 bool in_use = false;
 
-/// The state of the power, common to all files.
-struct Power {
+/// What was asked for and has come of it, common to all files.
+struct Failure {
   std::int64_t operations = 0;
-  std::int64_t fail_at = 0;  ///< 0: never
+  std::int64_t at = 0;  ///< 0: never
+  bool disk_full = false;
   FailingFileSystem::Unsynced unsynced = FailingFileSystem::Unsynced::lost;
-  bool cut = false;
+  std::function<void()> then;  ///< called when the power has gone
+  bool has_failed = false;
+  bool just_failed = false;  ///< by the operation that is under way
 };
-Power power;
+Failure failure;
 
 /// What a write since the last sync replaced.
 struct Undo {
@@ -72,12 +75,21 @@ void lose_unsynced() {
 }
 
 /// Counts one changing operation; true where it may go on.
-bool powered() {
-  if (power.cut) return false;
-  if (++power.operations != power.fail_at) return true;
-  power.cut = true;
-  if (power.unsynced == FailingFileSystem::Unsynced::lost) lose_unsynced();
-  return false;
+bool works() {
+  if (failure.has_failed) return false;
+  failure.has_failed = failure.just_failed = ++failure.operations == failure.at;
+  return !failure.has_failed;
+}
+
+/// The operation fails. Where it is the one at which the power goes, the files become what that leaves of
+/// them.
+int fails(int code) {
+  if (failure.disk_full) return SQLITE_FULL;
+  if (std::exchange(failure.just_failed, false)) {
+    if (failure.unsynced == FailingFileSystem::Unsynced::lost) lose_unsynced();
+    if (failure.then) failure.then();
+  }
+  return code;
 }
 
 int close_file(sqlite3_file* file) {
@@ -95,27 +107,30 @@ int read_file(sqlite3_file* file, void* into, int count, sqlite3_int64 offset) {
 
 int write_file(sqlite3_file* file, const void* from, int count, sqlite3_int64 offset) {
   File& f = of(file);
-  if (power.cut) return SQLITE_IOERR_WRITE;
-  remember(f, offset, count);
-  if (powered()) return f.real->pMethods->xWrite(f.real, from, count, offset);
-  if (power.unsynced == FailingFileSystem::Unsynced::half_of_the_last) {
+  if (works()) {
+    remember(f, offset, count);
+    return f.real->pMethods->xWrite(f.real, from, count, offset);
+  }
+  if (failure.just_failed && !failure.disk_full &&
+      failure.unsynced == FailingFileSystem::Unsynced::half_of_the_last) {
     f.real->pMethods->xWrite(f.real, from, count / 2, offset);
   }
-  return SQLITE_IOERR_WRITE;
+  return fails(SQLITE_IOERR_WRITE);
 }
 
 int truncate_file(sqlite3_file* file, sqlite3_int64 size) {
   File& f = of(file);
-  if (power.cut) return SQLITE_IOERR_TRUNCATE;
+  if (!works()) return fails(SQLITE_IOERR_TRUNCATE);
   const sqlite3_int64 before = size_of(f);
   if (before > size) remember(f, size, static_cast<int>(before - size));
-  return powered() ? f.real->pMethods->xTruncate(f.real, size) : SQLITE_IOERR_TRUNCATE;
+  return f.real->pMethods->xTruncate(f.real, size);
 }
 
-int sync_file(sqlite3_file* file, int flags) {
-  if (!powered()) return SQLITE_IOERR_FSYNC;
+int sync_file(sqlite3_file* file, int) {
+  if (!works()) return fails(SQLITE_IOERR_FSYNC);
+  // What is synced is safe from this power cut; the real disk need not be asked, which would take its time.
   of(file).undo->clear();
-  return of(file).real->pMethods->xSync(of(file).real, flags);
+  return SQLITE_OK;
 }
 
 int file_size(sqlite3_file* file, sqlite3_int64* size) {
@@ -179,7 +194,7 @@ int open_file(sqlite3_vfs*, const char* name, sqlite3_file* file, int flags, int
 }
 
 int delete_file(sqlite3_vfs*, const char* name, int sync) {
-  return powered() ? real_system()->xDelete(real_system(), name, sync) : SQLITE_IOERR_DELETE;
+  return works() ? real_system()->xDelete(real_system(), name, sync) : fails(SQLITE_IOERR_DELETE);
 }
 
 void register_system() {
@@ -212,24 +227,32 @@ Millis wait_for_lock() {
 
 FailingFileSystem::FailingFileSystem() {
   if (sqlite3_vfs_find(kName) == nullptr) register_system();
-  power = {};
+  failure = {};
   in_use = true;
 }
 FailingFileSystem::~FailingFileSystem() {
-  power = {};
+  failure = {};
   in_use = false;
 }
-void FailingFileSystem::cut_at(std::int64_t fail_at, Unsynced unsynced) {
-  power = {0, fail_at, unsynced, false};
+void FailingFileSystem::cut_at(std::int64_t number, Unsynced unsynced, std::function<void()> then) {
+  failure = {};
+  failure.at = number;
+  failure.unsynced = unsynced;
+  failure.then = std::move(then);
+}
+void FailingFileSystem::full_at(std::int64_t number) {
+  failure = {};
+  failure.at = number;
+  failure.disk_full = true;
 }
 void FailingFileSystem::restore() {
-  power = {};
+  failure = {};
 }
 std::int64_t FailingFileSystem::operations() const {
-  return power.operations;
+  return failure.operations;
 }
-bool FailingFileSystem::is_cut() const {
-  return power.cut;
+bool FailingFileSystem::has_failed() const {
+  return failure.has_failed;
 }
 
 const char* file_system_name() {

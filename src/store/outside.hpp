@@ -18,9 +18,8 @@ void use_clock(std::function<Instant()> clock);
 void use_wait(Millis wait);
 [[nodiscard]] Millis wait_for_lock();
 
-/// A file system on which the power fails. It passes everything on to the real one and counts what changes
-/// files: writes, truncations, syncs, deletions. At operation `fail_at` (from 1) the power goes: what was
-/// written since the last sync of each file is undone, and every later operation fails until `restore`.
+/// A file system on which the power fails, or the disk is full. It passes everything on to the real one and
+/// counts what changes files: writes, truncations, syncs, deletions. Syncs are only counted and believed.
 class FailingFileSystem {
  public:
   FailingFileSystem();   ///< books are opened on it from here on
@@ -28,12 +27,17 @@ class FailingFileSystem {
   FailingFileSystem(const FailingFileSystem&) = delete;
   FailingFileSystem& operator=(const FailingFileSystem&) = delete;
 
-  /// What becomes of writes that were not synced.
+  /// What becomes of writes that were not synced: undone in every file, kept (only the process died), or kept
+  /// but for the second half of the last one.
   enum class Unsynced { lost, kept, half_of_the_last };
-  void cut_at(std::int64_t fail_at, Unsynced unsynced);
-  void restore();                                 ///< power is back
-  [[nodiscard]] std::int64_t operations() const;  ///< since the last cut_at or restore
-  [[nodiscard]] bool is_cut() const;
+  /// At operation `number` (from 1) the power goes; every later operation fails until `restore`. `then` is
+  /// called when the files are as the failure left them; a test ends its process there.
+  void cut_at(std::int64_t number, Unsynced unsynced, std::function<void()> then = {});
+  /// From operation `number` on the disk is full, until `restore`; nothing written before is lost.
+  void full_at(std::int64_t number);
+  void restore();                                 ///< power is back, or room on the disk
+  [[nodiscard]] std::int64_t operations() const;  ///< since the last cut_at, full_at or restore
+  [[nodiscard]] bool has_failed() const;
 };
 
 /// The name of the SQLite VFS that books are opened with; null: SQLite's own.
